@@ -1,0 +1,3 @@
+#include "engine/cross_section.h"
+
+namespace engine {}

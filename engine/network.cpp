@@ -1,0 +1,3 @@
+#include "engine/network.h"
+
+namespace engine {}

@@ -1,0 +1,51 @@
+// The solved network: voltages, currents, and what any two points show to the outside.
+#pragma once
+
+#include <Eigen/Core>
+#include <memory>
+#include <string>
+#include <vector>
+
+#include "engine/network.h"
+
+namespace engine {
+
+/// A network solved to the last digits that double precision can hold, also where floating
+/// conductors hang on admittances of 1e-9 S beside series admittances of 1e3 S: one base potential
+/// per island and deviations from it, live nodes counted from their no-load potential, one
+/// refinement on stored voltage drops. Floating voltages and source impedances hold 1e-10 relative,
+/// an EMF of microvolts along a floating conductor 1e-8.
+/// Formulation and source: engine/README.md, "The network".
+class SolvedNetwork {
+ public:
+  /// Factors and solves. Throws std::invalid_argument as require_valid does. Nodes of an island that
+  /// nothing ties to earth, not even capacitance, are left out, listed in undetermined(), and the
+  /// rest is solved.
+  explicit SolvedNetwork(Network network);
+  ~SolvedNetwork();
+  SolvedNetwork(SolvedNetwork&&) noexcept;
+  SolvedNetwork& operator=(SolvedNetwork&&) noexcept;
+
+  const Network& network() const;
+
+  /// Nodes whose potential nothing determines; their voltages are NaN.
+  const std::vector<int>& undetermined() const;
+
+  /// Largest unbalanced current of a node over the sum of the magnitudes of its branch currents,
+  /// after refinement; computed, never assumed.
+  double residual() const;
+
+  Complex volts(int node) const;      // V RMS, from earth
+  Complex volts(int a, int b) const;  // V RMS, v_a - v_b, without cancellation inside an island
+  Complex current(int line, int conductor, int cell = 0) const;  // A, in the series branch, from -> to
+
+  /// Thevenin impedance between nodes a and b, ohm, all EMFs at rest. One solve.
+  Complex source_impedance(int a, int b) const;
+
+ private:
+  struct Impl;
+  std::unique_ptr<Impl> impl_;
+  friend class Attribution;
+};
+
+}  // namespace engine

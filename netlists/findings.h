@@ -1,0 +1,84 @@
+// What the program found: the one thing that every writer writes.
+#pragma once
+
+#include <complex>
+#include <optional>
+#include <string>
+#include <vector>
+
+namespace netlists {
+
+enum class Condition { grounded, energised, through_load, grounded_through_load, floating };
+enum class Appearance { live_like, unclear, dead_like };
+enum class Misleads { no, false_dead, false_live };
+
+struct Reading {
+  std::string instrument;       // name
+  std::string reference;        // "ground", "earth" or CIRCUIT.wire
+  std::optional<double> range;  // V full scale, where the needle matters
+  double volts = 0.0;           // V RMS, the instrument's loading included
+  Appearance appearance = Appearance::unclear;
+  bool judged = false;     // to ground or to the own neutral, by a voltmeter
+  bool indicator = false;  // only lights, buzzes or glows
+  bool indicates = false;  // indicators: at or over the threshold
+};
+
+struct ContributionEntry {
+  std::string from;            // CIRCUIT.wire, RUN.raceway, "supply:NAME", "others"
+  std::string path;            // "electric" | "magnetic" | "conductive"
+  std::complex<double> volts;  // V RMS
+};
+
+struct PlaceFindings {
+  std::string place;
+  std::string reference;                  // "ground" or "earth"
+  std::complex<double> open_circuit;      // V RMS, to the reference
+  std::complex<double> source_impedance;  // ohm, to the reference
+  double short_circuit = 0.0;             // A
+  std::vector<Reading> readings;
+  std::vector<ContributionEntry> contributions;  // empty for stiffly fed conductors
+};
+
+/// What tells coupling from a real source (design: U behind U / 0.5 mA).
+struct Settle {
+  std::optional<std::string> instrument;  // null: none separates them
+  double expect = 0.0;                    // V, where an instrument does
+  double treat_as_live_above = 0.0;       // V, never above T = U R / (R + U/0.5 mA)
+  std::string why;                        // words for people, with what would settle it otherwise
+};
+
+struct ConductorFindings {
+  std::string id;  // CIRCUIT.wire or RUN.raceway
+  std::optional<int> rank;
+  Condition condition = Condition::floating;
+  Misleads misleads = Misleads::no;
+  double expected_reading = 0.0;  // V, the one it is ranked by
+  bool not_predicted = false;     // shares a run with a drive's output
+  bool isolated_supply = false;   // belongs to a supply without a grounded pole
+  std::string supply;             // of an energised conductor
+  Settle settle;
+  std::vector<PlaceFindings> places;
+};
+
+struct Findings {
+  std::string title;
+  std::string model_sha256;
+  std::string program_version;
+  double frequency = 60.0;  // Hz
+  std::string stage;
+  unsigned seed = 1;
+  std::vector<ConductorFindings> conductors;  // ranked first, by rank; then the others in model order
+  std::vector<std::string> states;            // every breaker and switch state assumed, in words
+  std::vector<std::string> assumptions;
+  std::vector<std::string> warnings;
+  double residual = 0.0;  // of the network solution
+};
+
+std::string to_string(Condition condition);
+std::string to_string(Appearance appearance);
+std::string to_string(Misleads misleads);  // "no", "false_dead", "false_live"
+
+/// The caution of every output for people.
+const std::string& caution();
+
+}  // namespace netlists

@@ -1,0 +1,86 @@
+// From the building to the coupled network of every conductor in every run.
+#pragma once
+
+#include <map>
+#include <string>
+#include <vector>
+
+#include "engine/capacitance.h"
+#include "engine/cross_section.h"
+#include "engine/network.h"
+#include "netlists/building.h"
+#include "netlists/fault.h"
+
+namespace netlists {
+
+/// Every fault of a building that needs more than one entry to see: names that lead nowhere, loops in
+/// a tree of runs, a wire that lands nowhere, two circuits in one slot, cyclic feeders, an overfilled
+/// raceway (a warning). Empty: the building can be lowered.
+std::vector<Fault> validate(const Building& building);
+
+/// The section of one run as drawn with one seed, with the names of its rows.
+struct RunSection {
+  std::string run;  // "C1", or "C2+C3" for a joint section
+  engine::CrossSection section;
+  std::vector<std::string> names;  // CIRCUIT.wire, RUN.raceway, by row
+};
+
+/// The first layout of a run that `seed` draws. `run` must exist.
+RunSection run_section(const Building& building, const std::string& run, unsigned seed);
+
+/// Where a conductor can be reached.
+struct Access {
+  std::string place;
+  int node = 0;
+};
+
+/// One metallic path, by its id, with every place where it can be reached.
+struct ConductorPath {
+  std::string id;       // CIRCUIT.wire or RUN.raceway
+  std::string circuit;  // "" for a raceway
+  std::vector<Access> access;
+  std::vector<std::pair<int, int>> segments;  // line, conductor within it
+};
+
+/// What joins two components for the judgement of conditions: never cable capacitance or leakage.
+enum class Join { wire, load };
+
+struct Connection {
+  int a = 0;  // nodes
+  int b = 0;
+  Join join = Join::wire;
+  engine::Complex impedance;  // ohm, loads
+};
+
+/// A pole of a live supply.
+struct LivePole {
+  int node = 0;
+  engine::Complex volts;  // V, no-load, from earth, or from the supply's own centre where it floats
+  std::string supply;
+  std::string name;  // "A", "neutral"
+  bool grounded = false;
+};
+
+/// A building lowered, with the way back from nodes and lines to the user's names.
+struct Lowered {
+  engine::Network network;
+  std::vector<std::string> node_names;                    // size node_count; [0] is "earth"
+  std::vector<std::string> line_runs;                     // size lines
+  std::vector<std::vector<std::string>> line_conductors;  // [line][conductor]
+  std::vector<std::string> element_names;                 // size elements: "load LP2-7"
+  std::vector<std::string> source_names;                  // size sources: "T1 A"
+  std::map<std::string, int> at;                          // "spare-1.a@JB-4", "ground@JB-4" -> node
+  std::vector<ConductorPath> conductors;                  // every wire of the model, then raceways and armour
+  std::vector<Connection> connections;                    // within conductors, through contacts, bonds, loads
+  std::vector<LivePole> poles;
+  std::vector<std::string> floating_supplies;  // names of supplies without a grounded pole
+  std::vector<std::string> states;             // every breaker and switch state assumed, in words
+  std::vector<std::string> assumptions;
+  std::vector<std::string> warnings;
+};
+
+/// Lowers a valid building in one stage ("" for the first, or as drawn where there are none). `seed`
+/// draws the layouts. Throws std::invalid_argument for a stage that is not there.
+Lowered lower(const Building& building, const std::string& stage, unsigned seed);
+
+}  // namespace netlists

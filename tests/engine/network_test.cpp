@@ -1,0 +1,3 @@
+#include "engine/network.h"
+
+#include <gtest/gtest.h>
