@@ -1,0 +1,1 @@
+#include "io/catalogue_file.h"

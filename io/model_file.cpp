@@ -1,0 +1,1 @@
+#include "io/model_file.h"

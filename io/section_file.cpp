@@ -1,0 +1,1 @@
+#include "io/section_file.h"

@@ -1,0 +1,1 @@
+#include "netlists/findings.h"

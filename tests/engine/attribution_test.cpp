@@ -1,0 +1,3 @@
+#include "engine/attribution.h"
+
+#include <gtest/gtest.h>

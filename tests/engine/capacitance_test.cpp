@@ -1,0 +1,3 @@
+#include "engine/capacitance.h"
+
+#include <gtest/gtest.h>

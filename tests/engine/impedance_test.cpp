@@ -1,0 +1,3 @@
+#include "engine/impedance.h"
+
+#include <gtest/gtest.h>

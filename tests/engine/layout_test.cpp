@@ -1,0 +1,3 @@
+#include "engine/layout.h"
+
+#include <gtest/gtest.h>

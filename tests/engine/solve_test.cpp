@@ -1,0 +1,3 @@
+#include "engine/solve.h"
+
+#include <gtest/gtest.h>

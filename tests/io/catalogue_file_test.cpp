@@ -1,0 +1,3 @@
+#include "io/catalogue_file.h"
+
+#include <gtest/gtest.h>

@@ -1,0 +1,3 @@
+#include "io/model_file.h"
+
+#include <gtest/gtest.h>

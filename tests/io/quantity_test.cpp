@@ -1,0 +1,3 @@
+#include "io/quantity.h"
+
+#include <gtest/gtest.h>

@@ -1,0 +1,3 @@
+#include "io/section_file.h"
+
+#include <gtest/gtest.h>

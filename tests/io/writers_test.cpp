@@ -1,0 +1,3 @@
+#include "io/writers.h"
+
+#include <gtest/gtest.h>

@@ -1,0 +1,3 @@
+#include "netlists/fault.h"
+
+#include <gtest/gtest.h>

@@ -1,0 +1,3 @@
+#include "netlists/judge.h"
+
+#include <gtest/gtest.h>

@@ -1,0 +1,3 @@
+#include "netlists/lower.h"
+
+#include <gtest/gtest.h>
