@@ -1,3 +1,3 @@
-#include "netlists/lower.h"
-
 #include <gtest/gtest.h>
+
+#include "netlists/lower.h"
