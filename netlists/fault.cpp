@@ -4,6 +4,7 @@
 
 #include <algorithm>
 #include <numeric>
+#include <tuple>
 
 namespace netlists {
 namespace {
@@ -42,6 +43,9 @@ std::string nearest(const std::string& word, const std::vector<std::string>& can
   std::string best;
   std::size_t best_distance = std::max<std::size_t>(1, word.size() / 3) + 1;
   for (const auto& candidate : candidates) {
+    const std::size_t lengths =
+        word.size() > candidate.size() ? word.size() - candidate.size() : candidate.size() - word.size();
+    if (lengths >= best_distance) continue;  // the distance is never less: a long junk word costs nothing
     const std::size_t distance = edit_distance(word, candidate);
     if (distance < best_distance) {
       best_distance = distance;
@@ -49,6 +53,21 @@ std::string nearest(const std::string& word, const std::vector<std::string>& can
     }
   }
   return best;
+}
+
+std::string nearest_hint(const std::string& word, const std::vector<std::string>& candidates) {
+  const std::string near = nearest(word, candidates);
+  return near.empty() ? near : fmt::format("; the nearest is '{}'", near);
+}
+
+void sort_by_place(std::vector<Fault>& faults) {
+  const auto key = [](const Fault& f) {
+    return std::tie(f.mark.file, f.mark.line, f.mark.column, f.severity, f.what);
+  };
+  std::stable_sort(faults.begin(), faults.end(),
+                   [&](const Fault& a, const Fault& b) { return key(a) < key(b); });
+  const auto same = [&](const Fault& a, const Fault& b) { return key(a) == key(b); };
+  faults.erase(std::unique(faults.begin(), faults.end(), same), faults.end());
 }
 
 }  // namespace netlists

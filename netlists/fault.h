@@ -32,4 +32,10 @@ bool any_error(const std::vector<Fault>& faults);
 /// (never under 1, so that one slip is always forgiven), else "".
 std::string nearest(const std::string& word, const std::vector<std::string>& candidates);
 
+/// "; the nearest is 'WORD'" to end a message with, "" if there is none near.
+std::string nearest_hint(const std::string& word, const std::vector<std::string>& candidates);
+
+/// Sorts by file, line and column, as a reader of the file meets them; drops repetitions.
+void sort_by_place(std::vector<Fault>& faults);
+
 }  // namespace netlists
