@@ -34,10 +34,17 @@ struct Access {
   int node = 0;
 };
 
-/// One metallic path, by its id, with every place where it can be reached.
+/// One metallic path, by its id, with every place where it can be reached. A wire that a cut has
+/// parted is several paths: the one with the wire's first run keeps the wire's name, each other is
+/// CIRCUIT.wire/RUN after the first run it has.
 struct ConductorPath {
-  std::string id;       // CIRCUIT.wire or RUN.raceway
-  std::string circuit;  // "" for a raceway
+  std::string id;           // CIRCUIT.wire or RUN.raceway
+  std::string wire;         // the physical wire it is a piece of: its id without cuts
+  std::string circuit;      // "" for a raceway
+  std::string supply;       // that its circuit's panel hangs on; "" without a panel
+  std::string neutral;      // its circuit's neutral wire, "" if it has none or is it itself
+  bool ground = false;      // a protective conductor, armour or raceway
+  bool near_drive = false;  // shares a run with the output of a load of kind drive
   std::vector<Access> access;
   std::vector<std::pair<int, int>> segments;  // line, conductor within it
 };
@@ -49,7 +56,8 @@ struct Connection {
   int a = 0;  // nodes
   int b = 0;
   Join join = Join::wire;
-  engine::Complex impedance;  // ohm, loads
+  engine::Complex impedance;  // ohm
+  std::string what;           // "load LP2-7"
 };
 
 /// A pole of a live supply.

@@ -1,0 +1,81 @@
+#include "netlists/settle.h"
+
+#include <fmt/format.h>
+
+namespace netlists {
+namespace {
+
+constexpr double k_stand_in_for_p95 = 2.0;
+
+// What people can do where no instrument separates the two; none of it touches or shorts the conductor.
+const char* const k_otherwise =
+    "use a two-impedance voltage detector to every other conductor in the box; open and lock off the "
+    "neighbours one at "
+    "a time and see which one takes the reading with it; or load it through a resistor rated for the highest "
+    "system "
+    "voltage present, at least 10 kohm, with the detector left connected";
+
+}  // namespace
+
+double weakest_source_reading(double nominal, double resistance, double body_current) {
+  return nominal * resistance / (resistance + nominal / body_current);
+}
+
+Settle settle_coupling(const std::vector<CouplingReading>& readings, double nominal, double body_current) {
+  Settle settle;
+  double best = 1.0 / k_stand_in_for_p95;  // of the limit; a reading above this share separates nothing
+  for (const CouplingReading& reading : readings) {
+    const double limit = weakest_source_reading(nominal, reading.resistance, body_current);
+    if (limit <= 0 || reading.volts / limit > best) continue;
+    best = reading.volts / limit;
+    settle.instrument = reading.instrument;
+    settle.expect = reading.volts;
+    settle.treat_as_live_above = limit;
+  }
+  if (settle.instrument) {
+    settle.why = fmt::format(
+        "coupling alone leaves {:.2g} V on '{}', the weakest source a person feels ({:.0f} V behind {:.0f} "
+        "kohm) shows "
+        "{:.3g} V: treat as live above that; a reading below it never proves the conductor dead",
+        settle.expect, *settle.instrument, nominal, nominal / body_current / 1e3, settle.treat_as_live_above);
+  } else {
+    settle.why = std::string("no instrument of this model tells coupling from a weak real source here: ") +
+                 k_otherwise;
+  }
+  return settle;
+}
+
+Settle settle_through_load(const std::string& load) {
+  Settle settle;
+  settle.why = "fed through '" + load +
+               "': a real source, whatever an instrument of low impedance shows; treat as live, find and "
+               "open what feeds "
+               "the load, and lock it off";
+  return settle;
+}
+
+Settle settle_isolated(const std::string& supply, double line_volts) {
+  Settle settle;
+  settle.why = fmt::format(
+      "fed by '{}', which has no grounded pole: no reading to ground settles it; measure from leg to leg "
+      "({:.0f} V) with "
+      "a proven two-pole detector, and treat as live till the supply is opened and locked off. While one leg "
+      "is loaded "
+      "to ground, by a meter or a person, the other stands at full voltage to ground",
+      supply, line_volts);
+  return settle;
+}
+
+Settle settle_energised(const std::string& supply) {
+  Settle settle;
+  settle.why = "energised from '" + supply + "' by the drawing: treat as live";
+  return settle;
+}
+
+Settle settle_grounded() {
+  Settle settle;
+  settle.why = "joined to ground by the drawing, if the drawing is right; prove it like any other";
+  return settle;
+}
+
+}  // namespace netlists
