@@ -13,7 +13,8 @@
 namespace engine::testing {
 
 /// 45 decimal digits: 12 may cancel at a floating node and 30 are still right.
-using Wide = boost::multiprecision::number<boost::multiprecision::cpp_bin_float<45>, boost::multiprecision::et_off>;
+using Wide =
+    boost::multiprecision::number<boost::multiprecision::cpp_bin_float<45>, boost::multiprecision::et_off>;
 
 /// A network's nodal equations in complex numbers of Real, node voltages counted from earth.
 template <typename Real>
@@ -29,7 +30,8 @@ class NodalReference {
     right_.assign(size_, Number{});
     int next = network.node_count;
     for (const Line& line : network.lines) add_line(network.frequency, line, next);
-    for (const Element& element : network.elements) add_branch(element.a, element.b, wide(element.admittance));
+    for (const Element& element : network.elements)
+      add_branch(element.a, element.b, wide(element.admittance));
     for (const Source& source : network.sources) {
       const Number y = Number(Real(1)) / wide(source.impedance);
       add_branch(source.a, source.b, y);
@@ -72,8 +74,9 @@ class NodalReference {
     for (int i = 0; i < n; ++i)
       for (int j = 0; j < n; ++j) {
         z[i][j] = wide(line.matrices->impedance(i, j)) * length;
-        half[i][j] = Number(Real(line.matrices->conductance(i, j)), omega * Real(line.matrices->capacitance(i, j))) *
-                     (length / Real(2));
+        half[i][j] =
+            Number(Real(line.matrices->conductance(i, j)), omega * Real(line.matrices->capacitance(i, j))) *
+            (length / Real(2));
       }
     const Matrix y = inverse(z);
     std::vector<int> from = line.from;
