@@ -37,8 +37,8 @@ double strip_capacitance(double width, double height) {
   if (!(width > 0) || !(height > 0))
     throw std::invalid_argument("a strip needs a width and a height above 0 m");
   const double u = width / height;
-  if (u >= 1) return k_epsilon_0 * (u + 1.393 + 0.667 * std::log(u + 1.444));
-  return 2 * pi * k_epsilon_0 / std::log(8 / u + u / 4);
+  const double f = 6 + (2 * pi - 6) * std::exp(-std::pow(30.666 / u, 0.7528));
+  return 2 * pi * k_epsilon_0 / std::log(f / u + std::hypot(1.0, 2 / u));
 }
 
 double mean_log_distance_to_strip(double width, double x, double y) {

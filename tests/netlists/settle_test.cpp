@@ -1,0 +1,40 @@
+#include "netlists/settle.h"
+
+#include <gmock/gmock.h>
+#include <gtest/gtest.h>
+
+namespace netlists {
+namespace {
+
+using ::testing::HasSubstr;
+using ::testing::Not;
+
+// 3 kohm at 120 V: 120 * 3 / (3 + 240) = 1.48 V by Ohm's law.
+TEST(WeakestSource, IsOhmsLaw) { EXPECT_NEAR(weakest_source_reading(120, 3e3, 0.5e-3), 1.4815, 1e-4); }
+
+TEST(SettleCoupling, PicksTheInstrumentThatSeparatesBest) {
+  const Settle settle = settle_coupling({{"dmm", 10e6, 41}, {"low_impedance", 3e3, 0.18}}, 120, 0.5e-3);
+  ASSERT_TRUE(settle.instrument);
+  EXPECT_EQ(*settle.instrument, "low_impedance");
+  EXPECT_NEAR(settle.treat_as_live_above, 1.4815, 1e-4);
+  EXPECT_DOUBLE_EQ(settle.expect, 0.18);
+  EXPECT_THAT(settle.why, HasSubstr("never proves"));
+}
+
+// A long run on a weak low-impedance mode: the reading is above half of what the weak source shows.
+TEST(SettleCoupling, NamesNoInstrumentWhereNoneSeparates) {
+  const Settle settle = settle_coupling({{"low_impedance_weak", 300e3, 45}, {"low_impedance", 3e3, 0.9}}, 120, 0.5e-3);
+  EXPECT_FALSE(settle.instrument);
+  EXPECT_THAT(settle.why, HasSubstr("10 kohm"));
+  EXPECT_THAT(settle.why, HasSubstr("one at a time"));
+}
+
+TEST(SettleIsolated, SaysThatNoReadingToGroundSettlesIt) {
+  const Settle settle = settle_isolated("IT1", 120);
+  EXPECT_FALSE(settle.instrument);
+  EXPECT_THAT(settle.why, HasSubstr("no reading to ground settles it"));
+  EXPECT_THAT(settle.why, HasSubstr("full voltage to ground"));
+}
+
+}  // namespace
+}  // namespace netlists
