@@ -25,8 +25,9 @@ double strip_by_moments(double width, double height, int pieces) {
     for (int j = 0; j < pieces; ++j) {
       const double w = edge(j + 1) - edge(j);
       const double offset = x - (edge(j) + edge(j + 1)) / 2;
-      potential(i, j) = (mean_log_distance_to_strip(w, offset, 2 * height) - mean_log_distance_to_strip(w, offset, 0)) /
-                        (2 * pi * k_epsilon_0);
+      potential(i, j) =
+          (mean_log_distance_to_strip(w, offset, 2 * height) - mean_log_distance_to_strip(w, offset, 0)) /
+          (2 * pi * k_epsilon_0);
     }
   }
   return potential.partialPivLu().solve(Eigen::VectorXd::Ones(pieces)).sum();
@@ -65,7 +66,8 @@ TEST(MeanLogDistance, GivesGroversSelfDistance) {
   const double width = 0.3;
   const int points = 20000;
   double sum = 0;
-  for (int i = 0; i < points; ++i) sum += mean_log_distance_to_strip(width, width * ((i + 0.5) / points - 0.5), 0);
+  for (int i = 0; i < points; ++i)
+    sum += mean_log_distance_to_strip(width, width * ((i + 0.5) / points - 0.5), 0);
   EXPECT_NEAR(sum / points, std::log(width) - 1.5, 1e-4);
 }
 
@@ -89,7 +91,8 @@ TEST(AddStripRow, CountsFromEarthAndKeepsMaxwellForm) {
   EXPECT_NEAR(c.row(0).sum(), 0.0, 1e-25);  // the wire sees the strip only
   EXPECT_NEAR(c.row(1).sum(), strip_capacitance(0.3, 50e-3), 1e-25);
   EXPECT_NEAR(g.sum(), 0.0, 1e-25);
-  EXPECT_NEAR(z(1, 1).real() - z(0, 1).real(), 1 / (6e6 * strip.metal_area), 1e-9);  // the earth's share is common
+  EXPECT_NEAR(z(1, 1).real() - z(0, 1).real(), 1 / (6e6 * strip.metal_area),
+              1e-9);  // the earth's share is common
   EXPECT_GT(z(1, 1).imag(), z(0, 1).imag() * 0.9);
 }
 

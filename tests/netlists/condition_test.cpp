@@ -25,7 +25,8 @@ class Wires {
     lowered_.conductors.push_back(path);
     return *this;
   }
-  Wires& pole(int node, Complex volts, const std::string& supply, const std::string& name, bool grounded = false) {
+  Wires& pole(int node, Complex volts, const std::string& supply, const std::string& name,
+              bool grounded = false) {
     lowered_.poles.push_back({node, volts, supply, name, grounded});
     return *this;
   }
@@ -56,7 +57,11 @@ class Wires {
 
 // Node 0 earth, 1 the hot's bar, 2 its far end, 3 and 4 the ends of another wire.
 Wires branch() {
-  return Wires(8).pole(0, 0, "T1", "neutral", true).pole(1, 120, "T1", "A").conductor("hot", 1, 2).conductor("other", 3, 4);
+  return Wires(8)
+      .pole(0, 0, "T1", "neutral", true)
+      .pole(1, 120, "T1", "A")
+      .conductor("hot", 1, 2)
+      .conductor("other", 3, 4);
 }
 
 TEST(Conditions, AreGroundedEnergisedAndFloating) {

@@ -23,7 +23,8 @@ TEST(SettleCoupling, PicksTheInstrumentThatSeparatesBest) {
 
 // A long run on a weak low-impedance mode: the reading is above half of what the weak source shows.
 TEST(SettleCoupling, NamesNoInstrumentWhereNoneSeparates) {
-  const Settle settle = settle_coupling({{"low_impedance_weak", 300e3, 45}, {"low_impedance", 3e3, 0.9}}, 120, 0.5e-3);
+  const Settle settle =
+      settle_coupling({{"low_impedance_weak", 300e3, 45}, {"low_impedance", 3e3, 0.9}}, 120, 0.5e-3);
   EXPECT_FALSE(settle.instrument);
   EXPECT_THAT(settle.why, HasSubstr("10 kohm"));
   EXPECT_THAT(settle.why, HasSubstr("one at a time"));
