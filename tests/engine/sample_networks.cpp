@@ -78,7 +78,7 @@ class Builder {
   void add_circuit(int place) {
     const int hot = add_wire(0, place, bus_[pick(random_, 3)], false);
     const bool open_neutral = pick(random_, 4) == 0;
-    const int neutral = add_wire(0, place, open_neutral ? -1 : neutral_, false);
+    const int neutral = add_wire(0, place, open_neutral ? -1 : neutral_, open_neutral);
     network().elements.push_back({hot, neutral, 1.0 / Complex(draw(random_, 10, 40), draw(random_, 0, 5))});
     network().elements.push_back({hot, ground_[place], k_j * omega() * 4.7e-9});  // a filter
   }

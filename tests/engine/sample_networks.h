@@ -18,7 +18,7 @@ std::shared_ptr<const LineMatrices> random_matrices(std::mt19937& random, int n,
 /// A network with the nodes that a test asks about.
 struct Sample {
   Network network;
-  std::vector<int> floating;                  // nodes on conductors that nothing feeds
+  std::vector<int> floating;                  // nodes on conductors that nothing feeds but through a load
   std::vector<std::pair<int, int>> segments;  // ends of floating segments
   std::vector<std::vector<int>> wires;        // nodes of each conductor, by conductor
 };
