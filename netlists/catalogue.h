@@ -54,6 +54,7 @@ struct CableArmour {
   std::string material;         // "aluminium" | "steel"
   double inner_diameter = 0.0;  // m
   double outer_diameter = 0.0;  // m
+  double resistance = 0.0;      // ohm/m at 20 degC, dc, of the strip along its helix; 0: from the wall
 };
 
 struct CableType {

@@ -1,0 +1,154 @@
+// Entries that have terminals: supply systems, instruments, loads.
+#include <fmt/format.h>
+
+#include <algorithm>
+
+#include "io/catalogue_entries.h"
+#include "io/catalogue_entry.h"
+
+namespace io {
+namespace {
+
+using netlists::InstrumentKind;
+using netlists::InstrumentRange;
+using netlists::InstrumentType;
+using netlists::LoadKind;
+using netlists::Pole;
+using netlists::SystemType;
+
+constexpr Range k_volts{-1e6, 1e6, "-1000 kV to 1000 kV"};
+constexpr Range k_positive_volts{1e-3, 1e6, "1 mV to 1000 kV"};
+constexpr Range k_angle{-6.3, 6.3, "-360 deg to 360 deg"};
+constexpr Range k_source_ohms{0.0, 1e6, "0 ohm to 1 Mohm"};
+constexpr Range k_input_ohms{1e-3, 1e15, "1 mohm to 1e6 Gohm"};
+constexpr Range k_farads{0.0, 1.0, "0 pF to 1 F"};
+constexpr Range k_watts{1e-6, 1e9, "1e-6 W to 1e6 kW"};
+
+void read_lines(const YamlMap& map, SystemType& system) {
+  const YamlNode* lines = map.require("lines");
+  if (lines == nullptr) return;
+  for_each_entry(
+      map.reader(), *lines, map.owner() + ": lines", [&](const YamlNode& key, const YamlNode& value) {
+        const YamlMap pole(map.reader(), value, map.owner() + ": line '" + key.text + "'", {"volts", "angle"},
+                           &key);
+        pole.require("volts");
+        system.lines.push_back({key.text, pole.quantity("volts", Dimension::voltage, k_volts).value_or(0.0),
+                                pole.quantity("angle", Dimension::angle, k_angle).value_or(0.0)});
+      });
+}
+
+void check_grounded_pole(const YamlMap& map, const SystemType& system) {
+  std::vector<std::string> names;
+  for (const Pole& line : system.lines) names.push_back(line.name);
+  if (system.neutral) names.emplace_back("neutral");
+  const std::string& pole = system.grounded_pole;
+  if (pole.empty() || std::find(names.begin(), names.end(), pole) != names.end()) return;
+  map.error(*map.find("grounded_pole"),
+            fmt::format("grounded_pole '{}' is no pole of it{}", pole, netlists::nearest_hint(pole, names)));
+}
+
+void read_impedance(const YamlMap& map, SystemType& system) {
+  const YamlNode* node = map.require("impedance");
+  if (node == nullptr) return;
+  const YamlMap parts(map.reader(), *node, map.owner() + ": impedance", {"resistance", "reactance"});
+  parts.require("resistance");
+  parts.require("reactance");
+  system.impedance_resistance =
+      parts.quantity("resistance", Dimension::resistance, k_source_ohms).value_or(0.0);
+  system.impedance_reactance =
+      parts.quantity("reactance", Dimension::resistance, k_source_ohms).value_or(0.0);
+}
+
+void read_system_entry(const YamlMap& map, SystemType& system) {
+  read_lines(map, system);
+  system.neutral = map.has("neutral");
+  system.neutral_volts = map.quantity("neutral", Dimension::voltage, k_volts).value_or(0.0);
+  system.grounded_pole = map.text("grounded_pole").value_or("");
+  check_grounded_pole(map, system);
+  map.require("default_grounding");
+  system.default_grounding =
+      map.choice<std::string>(
+             "default_grounding",
+             {{"solid", "solid"}, {"corner", "corner"}, {"none", "none"}, {"isolated", "isolated"}})
+          .value_or("");
+  const bool grounded = system.default_grounding == "solid" || system.default_grounding == "corner";
+  if (grounded && !map.has("grounded_pole"))
+    map.error(map.place(), "grounded_pole is missing: which pole is grounded?");
+  read_impedance(map, system);
+}
+
+/// `mohm` and `Mohm` differ by 1e9: an input below 100 ohm is more likely a slip than a voltmeter.
+void warn_of_milliohms(const YamlMap& map, const YamlNode& at, double resistance) {
+  if (resistance < 100.0)
+    map.warn(at,
+             fmt::format(
+                 "resistance {:g} ohm is low for a voltmeter; mohm is a thousandth of an ohm, Mohm a million",
+                 resistance));
+}
+
+void read_ranges(const YamlMap& map, InstrumentType& instrument) {
+  const auto* ranges = map.list("ranges", "[{full_scale: 250 V, resistance: 1.25 Mohm}]");
+  if (ranges == nullptr) return;
+  for (const YamlNode& node : *ranges) {
+    const YamlMap parts(map.reader(), node, map.owner() + ": range", {"full_scale", "resistance"});
+    parts.require("full_scale");
+    parts.require("resistance");
+    const InstrumentRange range{
+        parts.quantity("full_scale", Dimension::voltage, k_positive_volts).value_or(0.0),
+        parts.quantity("resistance", Dimension::resistance, k_input_ohms).value_or(0.0)};
+    if (!instrument.ranges.empty() && range.full_scale <= instrument.ranges.back().full_scale)
+      parts.error(node, "ranges must stand in ascending order of full_scale");
+    instrument.ranges.push_back(range);
+  }
+}
+
+void read_instrument_entry(const YamlMap& map, InstrumentType& instrument) {
+  instrument.label = map.text("label").value_or(instrument.name);
+  instrument.kind = map.choice<InstrumentKind>("kind", {{"voltmeter", InstrumentKind::voltmeter},
+                                                        {"indicator", InstrumentKind::indicator}})
+                        .value_or(InstrumentKind::voltmeter);
+  if (map.has("resistance") == map.has("ranges")) map.error(map.place(), "takes either resistance or ranges");
+  if (const auto ohms = map.quantity("resistance", Dimension::resistance, k_input_ohms)) {
+    instrument.resistance = *ohms;
+    if (instrument.kind == InstrumentKind::voltmeter) warn_of_milliohms(map, *map.find("resistance"), *ohms);
+  }
+  read_ranges(map, instrument);
+  instrument.capacitance = map.quantity("capacitance", Dimension::capacitance, k_farads).value_or(0.0);
+  if (instrument.kind == InstrumentKind::indicator) map.require("threshold");
+  instrument.threshold = map.quantity("threshold", Dimension::voltage, k_positive_volts).value_or(0.0);
+}
+
+void read_load_entry(const YamlMap& map, LoadKind& load) {
+  load.label = map.text("label").value_or(load.name);
+  load.power_factor = map.number("power_factor", {0.01, 1.0, "0.01 to 1"}).value_or(1.0);
+  load.capacitive = map.flag("capacitive").value_or(false);
+  load.standby_resistance =
+      map.quantity("standby_resistance", Dimension::resistance, k_input_ohms).value_or(0.0);
+  load.standby_capacitance =
+      map.quantity("standby_capacitance", Dimension::capacitance, k_farads).value_or(0.0);
+  map.require("default_power");
+  load.default_power = map.quantity("default_power", Dimension::power, k_watts).value_or(0.0);
+}
+
+}  // namespace
+
+void read_systems(const CatalogueReading& reading, const YamlNode& node) {
+  read_entries(reading, node, "system",
+               {"lines", "neutral", "grounded_pole", "default_grounding", "impedance"},
+               reading.catalogue.systems, read_system_entry);
+}
+
+void read_instruments(const CatalogueReading& reading, const YamlNode& node) {
+  read_entries(reading, node, "instrument",
+               {"label", "kind", "resistance", "capacitance", "ranges", "threshold"},
+               reading.catalogue.instruments, read_instrument_entry);
+}
+
+void read_loads(const CatalogueReading& reading, const YamlNode& node) {
+  read_entries(
+      reading, node, "load",
+      {"label", "power_factor", "capacitive", "standby_resistance", "standby_capacitance", "default_power"},
+      reading.catalogue.loads, read_load_entry);
+}
+
+}  // namespace io
