@@ -23,4 +23,8 @@ ModelFile read_model(const std::string& path);
 /// The same from text; `name` stands for the file in messages.
 ModelFile read_model_text(const std::string& text, const std::string& name);
 
+/// The same on a catalogue of the caller's instead of the built-in one.
+ModelFile read_model_text(const std::string& text, const std::string& name,
+                          const netlists::Catalogue& catalogue);
+
 }  // namespace io

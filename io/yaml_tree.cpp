@@ -22,6 +22,11 @@ constexpr std::uintmax_t k_largest_file = 64u << 20;  // bytes
 constexpr std::size_t k_most_nodes = 10'000'000;
 constexpr std::size_t k_most_levels = 64;
 constexpr std::size_t k_most_faults = 1000;
+// The parser keeps a flow collection's tokens, some 100 bytes each, until its bracket closes, so their
+// number is bounded before it sees them. Brackets are counted wherever they stand, in words too: no
+// model comes near either bound.
+constexpr std::size_t k_most_flow_marks = 8'000'000;
+constexpr long k_most_unclosed = 1000;
 
 using netlists::Fault;
 using netlists::Mark;
@@ -176,12 +181,31 @@ std::size_t utf8_length(std::string_view text, std::size_t at) {
   return length;
 }
 
-/// The first byte that no text file holds, or a tab where YAML wants spaces.
+/// Counts what would make the parser hoard tokens; false once there is too much of it.
+class FlowMarks {
+ public:
+  bool take(unsigned char c) {
+    if (c == '[' || c == '{')
+      ++unclosed_;
+    else if (c == ']' || c == '}')
+      --unclosed_;
+    else if (c != ',')
+      return true;
+    return ++count_ <= k_most_flow_marks && unclosed_ <= k_most_unclosed;
+  }
+
+ private:
+  std::size_t count_ = 0;
+  long unclosed_ = 0;
+};
+
+/// The first byte that no text file holds, a tab where YAML wants spaces, or too many brackets.
 std::optional<Fault> unreadable_text(std::string_view text, const std::string& name) {
   int line = 1;
   std::size_t line_start = 0;
   bool indentation = true;
   bool tab = false;
+  FlowMarks flow_marks;
   for (std::size_t at = 0; at < text.size();) {
     const auto here = [&](std::string what) {
       return Fault{Severity::error, {name, line, static_cast<int>(at - line_start) + 1}, std::move(what)};
@@ -201,6 +225,7 @@ std::optional<Fault> unreadable_text(std::string_view text, const std::string& n
     }
     if ((c < 0x20 && c != '\n' && c != '\r' && c != '\t') || c == 0x7f)
       return here(fmt::format("byte 0x{:02x} is no text; a model is a plain text file", c));
+    if (!flow_marks.take(c)) return here("more than 64 levels of brackets, or too many brackets and commas");
     const std::size_t length = utf8_length(text, at);
     if (length == 0) return here(fmt::format("byte 0x{:02x} is no UTF-8; save the file as UTF-8 text", c));
     at += length;
