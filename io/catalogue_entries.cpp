@@ -85,13 +85,13 @@ InsulationLayer read_layer(const CatalogueReading& reading, const YamlMap& map) 
   InsulationLayer layer;
   map.require("material");
   map.require("thickness");
-  layer.material = read_material(reading, map, "material", false).value_or("");
+  layer.material = read_material(reading.catalogue, map, "material", false).value_or("");
   layer.thickness = map.quantity("thickness", Dimension::length, k_size).value_or(0.0);
   return layer;
 }
 
 void read_wire_entry(const CatalogueReading& reading, const YamlMap& map, WireType& wire) {
-  if (const auto metal = read_material(reading, map, "metal", true)) wire.metal = *metal;
+  if (const auto metal = read_material(reading.catalogue, map, "metal", true)) wire.metal = *metal;
   map.require("diameter");
   wire.conductor_diameter = map.quantity("diameter", Dimension::length, k_size).value_or(0.0);
   wire.strands = map.whole("strands", 1, 271).value_or(1);
@@ -161,7 +161,7 @@ void read_armour(const CatalogueReading& reading, const YamlMap& map, CableType&
                       {"material", "inner_diameter", "outer_diameter", "resistance"});
   for (const char* key : {"material", "inner_diameter", "outer_diameter"}) parts.require(key);
   netlists::CableArmour armour;
-  armour.material = read_material(reading, parts, "material", true).value_or("");
+  armour.material = read_material(reading.catalogue, parts, "material", true).value_or("");
   armour.inner_diameter = parts.quantity("inner_diameter", Dimension::length, k_size).value_or(0.0);
   armour.outer_diameter = parts.quantity("outer_diameter", Dimension::length, k_size).value_or(0.0);
   armour.resistance = read_resistance_per_length(parts, "resistance").value_or(0.0);
@@ -207,7 +207,7 @@ void read_cable_entry(const CatalogueReading& reading, const YamlMap& map, Cable
   read_armour(reading, map, cable);
   if (map.has("jacket") == map.has("armour")) map.error(map.place(), "takes either a jacket or an armour");
   map.require("filler");
-  cable.filler = read_material(reading, map, "filler", false).value_or("");
+  cable.filler = read_material(reading.catalogue, map, "filler", false).value_or("");
   map.require("cores");
   const auto* cores = map.list("cores", "[{role: hot, wire: THHN 12, x: 0 mm, y: 0 mm}]");
   if (cores != nullptr && cores->empty()) map.error(*map.find("cores"), "a cable has at least one core");
@@ -248,7 +248,7 @@ void read_raceway_entry(const CatalogueReading& reading, const YamlMap& map, Rac
   else
     read_trough(map, raceway);
   map.require("material");
-  raceway.material = read_material(reading, map, "material", raceway.metal()).value_or("");
+  raceway.material = read_material(reading.catalogue, map, "material", raceway.metal()).value_or("");
 }
 
 }  // namespace

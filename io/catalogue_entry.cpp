@@ -91,13 +91,13 @@ std::optional<double> read_resistance_per_length(const YamlMap& map, std::string
   return std::nullopt;
 }
 
-std::optional<std::string> read_material(const CatalogueReading& reading, const YamlMap& map,
+std::optional<std::string> read_material(const netlists::Catalogue& catalogue, const YamlMap& map,
                                          std::string_view key, bool metal) {
   const auto name = map.text(key);
   if (!name) return std::nullopt;
-  const auto names = names_of(reading.catalogue.materials, metal);
-  const auto found = reading.catalogue.materials.find(*name);
-  if (found == reading.catalogue.materials.end()) {
+  const auto names = names_of(catalogue.materials, metal);
+  const auto found = catalogue.materials.find(*name);
+  if (found == catalogue.materials.end()) {
     map.error(*map.find(key), fmt::format("{} '{}' is not in the catalogue{}", key, *name,
                                           netlists::nearest_hint(*name, names)));
     return std::nullopt;

@@ -29,7 +29,7 @@ std::optional<Spread> read_spread(const YamlMap& map, std::string_view key, cons
 std::optional<double> read_resistance_per_length(const YamlMap& map, std::string_view key);
 
 /// The name of a material that conducts (`metal`) or insulates. Any other is reported.
-std::optional<std::string> read_material(const CatalogueReading& reading, const YamlMap& map,
+std::optional<std::string> read_material(const netlists::Catalogue& catalogue, const YamlMap& map,
                                          std::string_view key, bool metal);
 
 /// True for a number of strands that lie in full rings around one: 1, 7, 19, 37, ...
