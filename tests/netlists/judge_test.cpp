@@ -1,3 +1,196 @@
 #include "netlists/judge.h"
 
+#include <gmock/gmock.h>
 #include <gtest/gtest.h>
+
+#include <cmath>
+
+#include "tests/netlists/model_text.h"
+
+namespace netlists {
+namespace {
+
+using ::testing::HasSubstr;
+
+std::string open_neutral(const std::string& load) {
+  return "supplies: {T1: {system: 120/240}}\npanels: {LP: {supply: T1}}\n"
+         "runs: {C1: {from: LP, to: Room, length: 25 m, raceway: EMT 1/2}}\n"
+         "circuits:\n"
+         "  L1:\n"
+         "    panel: LP\n"
+         "    slot: 1\n"
+         "    wires: {hot: THHN 12, neutral: THHN 12, ground: THHN 12}\n"
+         "    runs: [C1]\n"
+         "    loads: [{at: Room, between: [hot, neutral], kind: resistive, " +
+         load +
+         "}]\n"
+         "cuts: [{at: LP, wire: L1.neutral, side: C1}]\n";
+}
+
+// An open neutral behind 900 W: full voltage on every instrument, and never a phantom.
+TEST(Judge, OpenNeutralBehindALoadIsThroughLoad) {
+  const Findings findings = Solved(open_neutral("power: 900 W")).findings();
+  const ConductorFindings& neutral = conductor(findings, "L1.neutral");
+  EXPECT_EQ(neutral.condition, Condition::through_load);
+  EXPECT_EQ(neutral.misleads, Misleads::no);
+  for (const char* instrument : {"dmm", "low_impedance", "analog_5k"}) {
+    EXPECT_NEAR(reading(neutral, "Room", instrument, "ground"), 120, 1.2) << instrument;
+  }
+  EXPECT_FALSE(neutral.settle.instrument);
+  EXPECT_THAT(neutral.settle.why, HasSubstr("treat as live"));
+}
+
+// Ohm's law: 120 V behind R into 3 kohm reads 120 * 3 / (3 + R / 1 kohm).
+TEST(Judge, HighResistanceLoadsHideAnOpenNeutralFromLowImpedance) {
+  const ConductorFindings at_22k =
+      conductor(Solved(open_neutral("resistance: 22 kohm")).findings(), "L1.neutral");
+  EXPECT_EQ(at_22k.condition, Condition::through_load);
+  EXPECT_NEAR(reading(at_22k, "Room", "low_impedance", "ground"), 120 * 3 / 25.0, 0.2);
+  const ConductorFindings at_150k =
+      conductor(Solved(open_neutral("resistance: 150 kohm")).findings(), "L1.neutral");
+  EXPECT_EQ(at_150k.condition, Condition::through_load);
+  EXPECT_NEAR(reading(at_150k, "Room", "low_impedance", "ground"), 120 * 3 / 153.0, 0.05);
+  EXPECT_EQ(at_150k.misleads, Misleads::false_dead);
+}
+
+std::string isolated(const std::string& stray) {
+  return "supplies:\n"
+         "  T1: {system: 120/240}\n"
+         "  IT1: {system: 120 two-wire, grounding: isolated, fed_from: {circuit: L1}, stray: " +
+         stray +
+         "}\n"
+         "panels: {LP: {supply: T1}, IP: {supply: IT1}}\n"
+         "runs:\n"
+         "  C1: {from: LP, to: Vault, length: 5 m, raceway: EMT 3/4}\n"
+         "  C2: {from: IP, to: Room, length: 15 m, raceway: EMT 3/4}\n"
+         "circuits:\n"
+         "  L1: {panel: LP, slot: 1, wires: {hot: THHN 12, neutral: THHN 12, ground: THHN 12}, runs: [C1], "
+         "loads: []}\n"
+         "  I1: {panel: IP, slot: [1, 3], wires: {line1: THHN 12, line2: THHN 12, ground: THHN 12}, runs: "
+         "[C2], loads: []}\n";
+}
+
+TEST(Judge, IsolatedSupplyReadsHalfNothingAndFull) {
+  const Findings findings =
+      Solved(isolated("{line_to_ground: [5 nF, 5 nF], primary_to_secondary: 10 pF}")).findings();
+  for (const char* leg : {"I1.line1", "I1.line2"}) {
+    const ConductorFindings& found = conductor(findings, leg);
+    EXPECT_EQ(found.condition, Condition::energised);
+    EXPECT_TRUE(found.isolated_supply);
+    EXPECT_EQ(found.misleads, Misleads::false_dead);
+    EXPECT_NEAR(reading(found, "Room", "dmm", "ground"), 60, 4);
+    EXPECT_LT(reading(found, "Room", "low_impedance", "ground"), 3);
+    EXPECT_THAT(found.settle.why, HasSubstr("no reading to ground settles it"));
+  }
+  EXPECT_NEAR(reading(conductor(findings, "I1.line1"), "Room", "dmm", "I1.line2"), 120, 0.2);
+  EXPECT_NEAR(reading(conductor(findings, "I1.line1"), "Room", "low_impedance", "I1.line2"), 120, 0.2);
+  EXPECT_EQ(findings.conductors[0].misleads, Misleads::false_dead);
+  EXPECT_EQ(findings.conductors[0].rank, 1);
+}
+
+// Two capacitances to ground in series across the EMF divide it: the leg with the larger one reads less.
+TEST(Judge, UnequalStraysShareTheVoltageOfAnIsolatedSupply) {
+  const Findings findings =
+      Solved(isolated("{line_to_ground: [30 nF, 10 nF], primary_to_secondary: 0 nF}")).findings();
+  EXPECT_NEAR(reading(conductor(findings, "I1.line1"), "Room", "dmm", "ground"), 120 * 0.25, 4);
+  EXPECT_NEAR(reading(conductor(findings, "I1.line2"), "Room", "dmm", "ground"), 120 * 0.75, 4);
+}
+
+std::string spare_in(const std::string& raceway) {
+  return "supplies: {T1: {system: 120/240}}\npanels: {LP: {supply: T1}}\n"
+         "runs: {C1: {from: LP, to: Box, length: 30 m, raceway: " +
+         raceway +
+         "}}\n"
+         "circuits:\n"
+         "  L1: {panel: LP, slot: 1, wires: {hot: THHN 12, neutral: THHN 12, ground: THHN 12}, runs: [C1], "
+         "loads: []}\n"
+         "  spare: {wires: {a: THHN 12}, runs: [C1]}\n";
+}
+
+TEST(Judge, SpareReadsFarMoreInPlasticThanInMetal) {
+  const ConductorFindings metal = conductor(Solved(spare_in("EMT 3/4")).findings(), "spare.a");
+  const ConductorFindings plastic = conductor(Solved(spare_in("PVC 40 3/4")).findings(), "spare.a");
+  EXPECT_EQ(metal.condition, Condition::floating);
+  EXPECT_GT(reading(plastic, "Box", "dmm", "ground"), 1.5 * reading(metal, "Box", "dmm", "ground"));
+  EXPECT_LT(reading(metal, "Box", "low_impedance", "ground"), 0.5);
+  ASSERT_TRUE(metal.settle.instrument);
+  EXPECT_EQ(*metal.settle.instrument, "low_impedance");
+  EXPECT_LE(metal.settle.treat_as_live_above, 1.482);  // 120 * 3 / (3 + 240)
+}
+
+TEST(Judge, ContributionsAddUpToThePhasor) {
+  for (const std::string& text :
+       {spare_in("PVC 40 3/4"), isolated("{line_to_ground: [3 nF, 2 nF], primary_to_secondary: 1 nF}")}) {
+    const Findings findings = Solved(text).findings();
+    int checked = 0;
+    for (const ConductorFindings& found : findings.conductors) {
+      for (const PlaceFindings& place : found.places) {
+        if (place.contributions.empty()) continue;
+        engine::Complex sum = 0;
+        for (const ContributionEntry& entry : place.contributions) sum += entry.volts;
+        EXPECT_LT(std::abs(sum - place.open_circuit), 1e-9 * std::abs(place.open_circuit)) << found.id;
+        ++checked;
+      }
+    }
+    EXPECT_GT(checked, 0);
+  }
+}
+
+TEST(Judge, SpareIsPutThereByTheHotBesideIt) {
+  const ConductorFindings spare = conductor(Solved(spare_in("PVC 40 3/4")).findings(), "spare.a");
+  ASSERT_FALSE(spare.places[0].contributions.empty());
+  EXPECT_EQ(spare.places[0].contributions[0].from, "L1.hot");
+  EXPECT_EQ(spare.places[0].contributions[0].path, "electric");
+}
+
+// A conductor in a run with a drive's output is not predicted.
+TEST(Judge, DriveMarksItsNeighbours) {
+  const Findings findings = Solved(
+                                "supplies: {T1: {system: 480Y/277}}\npanels: {LP: {supply: T1}}\n"
+                                "runs: {C1: {from: LP, to: Pump, length: 30 m, raceway: EMT 1}}\n"
+                                "circuits:\n"
+                                "  M1: {panel: LP, slot: [1, 3, 5], wires: {a: THHN 12, b: THHN 12, c: THHN "
+                                "12, ground: THHN 12}, runs: [C1],\n"
+                                "       loads: [{at: Pump, between: [a, b], kind: drive, power: 2 kW}]}\n"
+                                "  spare: {wires: {a: THHN 12}, runs: [C1]}\n")
+                                .findings();
+  EXPECT_TRUE(conductor(findings, "spare.a").not_predicted);
+}
+
+// 24 V control beside power: 40 % of 24 V is far under 50 V.
+TEST(Judge, BandFollowsTheLowestSystemAtThePlace) {
+  const Findings findings =
+      Solved(spare_in("PVC 40 3/4") + "limits: {live_like: 10 V, dead_like: 1 V}\n").findings();
+  const ConductorFindings& spare = conductor(findings, "spare.a");
+  EXPECT_EQ(spare.misleads, Misleads::false_live);
+  EXPECT_TRUE(spare.rank);
+}
+
+TEST(Judge, PlaceWithoutGroundIsReadToEarthWithAWarning) {
+  const Findings findings =
+      Solved(
+          "supplies: {T1: {system: 120/240}}\npanels: {LP: {supply: T1}}\n"
+          "runs: {C1: {from: LP, to: Room, length: 30 m, raceway: PVC 40 3/4}}\n"
+          "circuits:\n"
+          "  L1: {panel: LP, slot: 1, wires: {hot: THHN 12, neutral: THHN 12}, runs: [C1], loads: []}\n"
+          "  spare: {wires: {a: THHN 12}, runs: [C1]}\n")
+          .findings();
+  EXPECT_EQ(conductor(findings, "spare.a").places.back().reference, "earth");
+  EXPECT_THAT(findings.warnings, testing::Contains(HasSubstr("'Room' has no ground")));
+}
+
+// A line fault current that comes back through the earth alone is outside the model.
+TEST(Judge, NetCurrentGetsAWarning) {
+  const Findings findings =
+      Solved(
+          "supplies: {T1: {system: 120/240}}\npanels: {LP: {supply: T1}}\n"
+          "runs: {C1: {from: LP, to: Room, length: 30 m, raceway: PVC 40 3/4}}\n"
+          "circuits:\n"
+          "  L1: {panel: LP, slot: 1, wires: {hot: THHN 12, neutral: THHN 12}, runs: [C1], loads: []}\n"
+          "leaks: [{at: Room, between: [L1.hot, earth], resistance: 100 ohm}]\n")
+          .findings();
+  EXPECT_THAT(findings.warnings, testing::Contains(HasSubstr("net current")));
+}
+
+}  // namespace
+}  // namespace netlists
