@@ -2,6 +2,7 @@
 #pragma once
 
 #include <string>
+#include <vector>
 
 #include "engine/capacitance.h"
 #include "engine/impedance.h"
@@ -12,30 +13,43 @@
 
 namespace io {
 
-/// Results file idlewire-findings/1.
+/// Results file idlewire-findings/1. A number that is not finite is null, with a warning.
 std::string findings_json(const netlists::Findings& findings);
 
 /// Network file idlewire-network/1: exactly the system that was solved.
 std::string network_json(const netlists::Lowered& lowered, const engine::SolvedNetwork& solved);
 
-/// Section result idlewire-section-result/1; `names` by row, the reference left out.
+/// Section result idlewire-section-result/1; `names` by row, the reference left out. `materials` are
+/// the values taken for each material named, in words.
 std::string section_json(const engine::FieldMatrices& field, const Eigen::MatrixXcd& impedance,
                          double frequency, const std::vector<std::string>& names,
-                         const std::string& reference);
+                         const std::string& reference, const std::vector<std::string>& materials = {});
 
-/// The ranked table for a terminal, at most `width` columns, with the caution.
-std::string ranked_table(const netlists::Findings& findings, int width, bool colour);
+/// The ranked table for a terminal, at most `width` columns (60 or more), with the caution. `date` is
+/// that of the sheet, as in "2024-05-17"; without one the sheet has none.
+std::string ranked_table(const netlists::Findings& findings, int width, bool colour,
+                         const std::string& date = "");
 
-/// One conductor in full, with the caution. Throws std::invalid_argument if the id is not there.
-std::string explanation(const netlists::Findings& findings, const std::string& id, int width);
+/// One conductor in full, at most `width` columns (80 or more), with the caution. Throws
+/// std::invalid_argument if the id is not there, with the nearest that is.
+std::string explanation(const netlists::Findings& findings, const std::string& id, int width,
+                        const std::string& date = "");
 
-/// The matrices of a section as text.
+/// The matrices of a section as text, with the caution.
 std::string section_text(const engine::FieldMatrices& field, const Eigen::MatrixXcd& impedance,
                          double frequency, const std::vector<std::string>& names,
-                         const std::string& reference);
+                         const std::string& reference, const std::vector<std::string>& materials = {});
 
-/// Writes beside the target, then renames: a failure leaves nothing half written. "-" is standard
-/// output. Throws std::runtime_error with the path and the system's reason.
+/// A plain drawing of a section, to scale, for a printer: black, white and greys. `names` by number:
+/// conductors, then shells, the reference of an open section among them.
+std::string section_svg(const engine::CrossSection& section, const std::vector<std::string>& names);
+
+/// Why nothing can be written to `path`, as far as can be told without writing: it is a directory, or
+/// its folder is not there. "" if nothing speaks against it. "-" is standard output.
+std::string unwritable(const std::string& path);
+
+/// Writes beside the target, flushes to disk, then renames: a failure leaves the old file, whole.
+/// "-" is standard output. Throws std::runtime_error with the path and the system's reason.
 void write_whole(const std::string& path, const std::string& content);
 
 }  // namespace io

@@ -6,6 +6,8 @@
 #include <string>
 #include <vector>
 
+#include "netlists/catalogue.h"
+
 namespace netlists {
 
 enum class Condition { grounded, energised, through_load, grounded_through_load, floating };
@@ -71,7 +73,8 @@ struct Findings {
   std::vector<std::string> states;            // every breaker and switch state assumed, in words
   std::vector<std::string> assumptions;
   std::vector<std::string> warnings;
-  double residual = 0.0;  // of the network solution
+  std::vector<InstrumentType> instruments;  // of the model, in its order
+  double residual = 0.0;                    // of the network solution
 };
 
 std::string to_string(Condition condition);

@@ -78,6 +78,7 @@ class Judge {
     findings.assumptions = lowered_.assumptions;
     findings.warnings = lowered_.warnings;
     findings.residual = solved_.residual();
+    findings.instruments = building_.instruments;
     for (std::size_t i = 0; i < lowered_.conductors.size(); ++i) findings.conductors.push_back(conductor(i));
     rank(findings.conductors);
     findings.warnings.insert(findings.warnings.end(), conditions_.warnings.begin(),

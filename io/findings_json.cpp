@@ -1,0 +1,105 @@
+#include "io/json_text.h"
+#include "io/writers.h"
+
+namespace io {
+namespace {
+using netlists::ConductorFindings;
+using netlists::Findings;
+using netlists::PlaceFindings;
+using netlists::Reading;
+using nlohmann::ordered_json;
+
+void add_empty_percentiles(ordered_json& out) {
+  for (const char* key : {"p05", "p50", "p95"}) out[key] = nullptr;
+}
+
+ordered_json reading_json(const Reading& reading, const std::string& where, Numbers& number) {
+  ordered_json out;
+  out["instrument"] = reading.instrument;
+  out["reference"] = reading.reference;
+  out["range_V"] = reading.range ? ordered_json(*reading.range) : ordered_json(nullptr);
+  out["volts"] =
+      number.real(reading.volts, where + ": reading of " + reading.instrument + " to " + reading.reference);
+  add_empty_percentiles(out);
+  out["appearance"] = netlists::to_string(reading.appearance);
+  out["judged"] = reading.judged;
+  if (reading.indicator) out["indicates"] = reading.indicates;
+  return out;
+}
+
+ordered_json place_json(const PlaceFindings& place, const std::string& id, Numbers& number) {
+  const std::string where = id + " at " + place.place;
+  ordered_json out;
+  out["place"] = place.place;
+  ordered_json open{{"reference", place.reference}};
+  open.update(number.phasor(place.open_circuit, "volts", where + ": open-circuit voltage"));
+  add_empty_percentiles(open);
+  out["open_circuit"] = open;
+  out["source_impedance"] = number.phasor(place.source_impedance, "ohms", where + ": source impedance");
+  out["short_circuit_A"] = number.real(place.short_circuit, where + ": short-circuit current");
+  out["readings"] = ordered_json::array();
+  for (const Reading& reading : place.readings)
+    out["readings"].push_back(reading_json(reading, where, number));
+  out["contributions"] = ordered_json::array();
+  for (const auto& entry : place.contributions) {
+    ordered_json one{{"from", entry.from}, {"path", entry.path}};
+    one.update(number.phasor(entry.volts, "volts", where + ": contribution of " + entry.from));
+    out["contributions"].push_back(one);
+  }
+  return out;
+}
+
+ordered_json settle_json(const netlists::Settle& settle, const std::string& id, Numbers& number) {
+  const bool settles = settle.instrument.has_value();
+  ordered_json out;
+  out["instrument"] = settles ? ordered_json(*settle.instrument) : ordered_json(nullptr);
+  out["expect_V"] = settles ? number.real(settle.expect, id + ": expected reading") : ordered_json(nullptr);
+  out["treat_as_live_above_V"] =
+      settles ? number.real(settle.treat_as_live_above, id + ": limit from which to treat as live")
+              : ordered_json(nullptr);
+  out["why"] = settle.why;
+  return out;
+}
+
+ordered_json conductor_json(const ConductorFindings& conductor, Numbers& number) {
+  ordered_json out;
+  out["id"] = conductor.id;
+  out["rank"] = conductor.rank ? ordered_json(*conductor.rank) : ordered_json(nullptr);
+  out["condition"] = netlists::to_string(conductor.condition);
+  out["supply"] = conductor.supply.empty() ? ordered_json(nullptr) : ordered_json(conductor.supply);
+  out["isolated_supply"] = conductor.isolated_supply;
+  out["not_predicted"] = conductor.not_predicted;
+  out["misleads"] = {{"how", netlists::to_string(conductor.misleads)}, {"probability", nullptr}};
+  out["expected_reading_V"] = number.real(conductor.expected_reading, conductor.id + ": expected reading");
+  out["settle"] = settle_json(conductor.settle, conductor.id, number);
+  out["places"] = ordered_json::array();
+  for (const PlaceFindings& place : conductor.places)
+    out["places"].push_back(place_json(place, conductor.id, number));
+  return out;
+}
+
+}  // namespace
+
+std::string findings_json(const Findings& findings) {
+  Numbers number;
+  ordered_json out;
+  out["format"] = "idlewire-findings/1";
+  out["program"] = {{"name", "idlewire"}, {"version", findings.program_version}};
+  out["model"] = {{"title", findings.title}, {"sha256", findings.model_sha256}};
+  out["frequency_Hz"] = findings.frequency;
+  out["stage"] = findings.stage;
+  out["draws"] = 0;
+  out["seed"] = findings.seed;
+  out["residual"] = number.real(findings.residual, "the residual of the network solution");
+  out["conductors"] = ordered_json::array();
+  for (const ConductorFindings& conductor : findings.conductors)
+    out["conductors"].push_back(conductor_json(conductor, number));
+  out["states"] = findings.states;
+  out["assumptions"] = findings.assumptions;
+  out["warnings"] = findings.warnings;
+  for (const std::string& warning : number.warnings()) out["warnings"].push_back(warning);
+  out["caution"] = netlists::caution();
+  return json_text(out);
+}
+
+}  // namespace io

@@ -1,0 +1,155 @@
+#include "io/findings_view.h"
+
+#include <fmt/format.h>
+
+#include <algorithm>
+#include <cmath>
+
+#include "io/text_layout.h"
+
+namespace io {
+namespace {
+using netlists::Appearance;
+using netlists::Condition;
+using netlists::ConductorFindings;
+using netlists::Findings;
+using netlists::Misleads;
+using netlists::PlaceFindings;
+using netlists::Reading;
+
+bool contradicts(const Reading& reading, Misleads how) {
+  if (!reading.judged) return false;
+  return (how == Misleads::false_dead && reading.appearance == Appearance::dead_like) ||
+         (how == Misleads::false_live && reading.appearance == Appearance::live_like);
+}
+
+/// Whatever is not a number stands last.
+double order_by(double value) { return std::isfinite(value) ? value : -1.0; }
+
+std::string list(const std::string& title, const std::vector<std::string>& lines, int width) {
+  if (lines.empty()) return "";
+  std::string out = "\n" + title + "\n";
+  for (const std::string& line : lines) out += paragraph("  - ", printable(line), width);
+  return out;
+}
+
+}  // namespace
+
+Focus focus(const ConductorFindings& conductor) {
+  Focus best;
+  double least = 0.0;
+  for (const PlaceFindings& place : conductor.places)
+    for (const Reading& reading : place.readings) {
+      if (!contradicts(reading, conductor.misleads)) continue;
+      const double distance = std::abs(reading.volts - conductor.expected_reading);
+      if (best.place != nullptr && !(distance < least)) continue;
+      best = {&place, reading.reference};
+      least = distance;
+    }
+  if (best.place != nullptr) return best;
+  for (const PlaceFindings& place : conductor.places)
+    if (best.place == nullptr ||
+        order_by(std::abs(place.open_circuit)) > order_by(std::abs(best.place->open_circuit)))
+      best = {&place, place.reference};
+  return best;
+}
+
+bool summed_up(const ConductorFindings& conductor) {
+  const bool by_wire =
+      conductor.condition == Condition::grounded || conductor.condition == Condition::energised;
+  return by_wire && !conductor.rank && !conductor.isolated_supply && conductor.misleads == Misleads::no;
+}
+
+std::vector<std::string> voltmeters(const Findings& findings) {
+  std::vector<std::string> names;
+  const auto add = [&names](const std::string& name) {
+    if (std::find(names.begin(), names.end(), name) == names.end()) names.push_back(name);
+  };
+  for (const auto& instrument : findings.instruments)
+    if (instrument.kind == netlists::InstrumentKind::voltmeter) add(instrument.name);
+  for (const ConductorFindings& conductor : findings.conductors)
+    for (const PlaceFindings& place : conductor.places)
+      for (const Reading& reading : place.readings)
+        if (!reading.indicator) add(reading.instrument);
+  return names;
+}
+
+const netlists::ContributionEntry* main_aggressor(const PlaceFindings& place) {
+  const netlists::ContributionEntry* best = nullptr;
+  for (const auto& entry : place.contributions) {
+    const bool better =
+        best == nullptr || (best->from == "others" && entry.from != "others") ||
+        (entry.from != "others" && order_by(std::abs(entry.volts)) > order_by(std::abs(best->volts)));
+    if (better) best = &entry;
+  }
+  return best;
+}
+
+const Reading* highest_to_a_conductor(const PlaceFindings& place, const std::string& but_not) {
+  const Reading* best = nullptr;
+  for (const Reading& reading : place.readings) {
+    const bool other = reading.reference != "ground" && reading.reference != "earth" &&
+                       reading.reference != but_not && !reading.indicator && !reading.judged;
+    if (other && (best == nullptr || order_by(reading.volts) > order_by(best->volts))) best = &reading;
+  }
+  return best;
+}
+
+std::string condition_in_words(const ConductorFindings& conductor) {
+  const std::string of = conductor.supply.empty() ? "a supply" : "supply " + printable(conductor.supply);
+  switch (conductor.condition) {
+    case Condition::grounded:
+      return "grounded: a path of wires, closed contacts or bonds leads to a grounded pole or bar";
+    case Condition::energised:
+      return "energised: a path of wires, closed contacts or bonds leads to a pole of " + of;
+    case Condition::through_load:
+      return "through_load: fed through a load; cable capacitance aside, it drives more into a body of "
+             "2 kohm than the model's limit of body current";
+    case Condition::grounded_through_load:
+      return "grounded_through_load: tied to ground through a load, and to no supply that could drive the "
+             "model's limit of body current through it";
+    case Condition::floating:
+      return "floating: neither a wire, a closed contact, a winding nor a load leads from it to a supply "
+             "pole or to ground";
+  }
+  return netlists::to_string(conductor.condition);
+}
+
+std::string misleads_in_words(const ConductorFindings& conductor) {
+  switch (conductor.misleads) {
+    case Misleads::false_dead:
+      return "false_dead: fed, and yet an instrument can read next to nothing";
+    case Misleads::false_live:
+      return "false_live: nothing feeds it as drawn, and yet an instrument can read as if something did";
+    case Misleads::no:
+      break;
+  }
+  return "not flagged";
+}
+
+std::string sheet_head(const Findings& findings, const std::string& date, int width) {
+  const std::string title = findings.title.empty() ? "untitled model" : findings.title;
+  std::string facts = fmt::format("Stage: {}. {} Hz.", findings.stage.empty() ? "as drawn" : findings.stage,
+                                  fmt::format("{:g}", findings.frequency));
+  if (!findings.model_sha256.empty()) facts += " Model " + findings.model_sha256.substr(0, 12) + ".";
+  if (!date.empty()) facts += " " + date + ".";
+  if (!findings.program_version.empty()) facts += " idlewire " + findings.program_version + ".";
+  return paragraph("", printable(title), width) + paragraph("", printable(facts), width) + "\n" +
+         paragraph("CAUTION  ", netlists::caution(), width);
+}
+
+std::string sheet_foot(const Findings& findings, int width) {
+  std::string states;
+  for (const std::string& state : findings.states) states += (states.empty() ? "" : "; ") + state;
+  std::string out = list("Warnings", findings.warnings, width);
+  out += "\nBreakers and switches as assumed\n" +
+         paragraph("  ", states.empty() ? "none in this model" : printable(states), width);
+  out += list("Assumptions", findings.assumptions, width);
+  out += "\n" + paragraph("",
+                          "A reading that agrees with this sheet proves nothing. "
+                          "Void once anything is switched or changed.",
+                          width);
+  return out;
+}
+
+}  // namespace io

@@ -1,0 +1,47 @@
+// What the writers for people pick from the findings: the place of a row, its readings, its words.
+#pragma once
+
+#include <string>
+#include <vector>
+
+#include "netlists/findings.h"
+
+namespace io {
+
+/// The place and reference a row of the table speaks of: those of the judged reading that misleads
+/// and lies nearest to the reading the conductor is ranked by; where nothing misleads, those of the
+/// highest open-circuit voltage. `place` is null where the conductor can be reached nowhere.
+struct Focus {
+  const netlists::PlaceFindings* place = nullptr;
+  std::string reference;
+};
+Focus focus(const netlists::ConductorFindings& conductor);
+
+/// True for a conductor that one line can sum up: fed or grounded by wire, as drawn, not flagged, of
+/// no isolated supply.
+bool summed_up(const netlists::ConductorFindings& conductor);
+
+/// Names of the voltmeters that read anything, in the order of the model or else of appearance.
+std::vector<std::string> voltmeters(const netlists::Findings& findings);
+
+/// The entry that contributes most, "others" aside where it can be; null without contributions.
+const netlists::ContributionEntry* main_aggressor(const netlists::PlaceFindings& place);
+
+/// The highest reading of a voltmeter against another conductor, which may settle a case without
+/// being judged; null where there is none.
+const netlists::Reading* highest_to_a_conductor(const netlists::PlaceFindings& place,
+                                                const std::string& but_not);
+
+/// What the condition says, in words: "floating: neither a wire, ...".
+std::string condition_in_words(const netlists::ConductorFindings& conductor);
+
+/// "false_live" in words; "not flagged" where nothing misleads.
+std::string misleads_in_words(const netlists::ConductorFindings& conductor);
+
+/// Title, stage, frequency, model and date in one line of words, then the caution.
+std::string sheet_head(const netlists::Findings& findings, const std::string& date, int width);
+
+/// States assumed, assumptions, warnings, and what a sheet of expected readings must say of itself.
+std::string sheet_foot(const netlists::Findings& findings, int width);
+
+}  // namespace io
