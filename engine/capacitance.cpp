@@ -3,6 +3,7 @@
 #include <Eigen/Cholesky>
 #include <Eigen/LU>
 #include <algorithm>
+#include <array>
 #include <cmath>
 #include <numbers>
 #include <string>
@@ -22,7 +23,13 @@ using Eigen::MatrixXd;
 constexpr int k_largest_order = 400;      // beyond it powers of radii underflow
 constexpr int k_largest_system = 4000;    // unknowns of a region: some seconds
 constexpr double k_growth = 4.0 / 3.0;    // of all orders where the tolerance is not met
-constexpr double k_smallest_order = 4.0;  // so that a lower one is left to compare with
+constexpr double k_smallest_order = 4.0;  // so that lower ones are left to compare with
+
+// What the walls' echoes and the sum of the losses leave out, of the tolerance: the levels do not show it.
+constexpr double k_left_out = 0.01;
+
+// Fractions of the full order at which a section is solved too, for the estimate of the error.
+constexpr std::array<double, k_levels> k_fractions = {0.6, 0.8, 1.0};
 
 /// Solves a section at orders that are `scale` times what the geometry asks for.
 class SectionSolver {
@@ -34,11 +41,13 @@ class SectionSolver {
   }
 
   /// F/m, of all conductors: counted from the plane or the tube; in the open, of zero net charge.
-  MatrixXcd capacitance(double scale) {
+  LevelMatrices capacitance(double scale) {
     scale_ = scale;
-    largest_order_ = largest_system_ = 0;
+    largest_orders_ = {};
+    largest_system_ = 0;
     const int n = section_.conductor_count();
-    MatrixXcd total = MatrixXcd::Zero(n, n);
+    LevelMatrices total;
+    total.fill(MatrixXcd::Zero(n, n));
     add(total, surrounding_region(), -1);
     for (size_t i = 0; i < circles_.size(); ++i)
       if (circles_[i].kind == Circle::Kind::shell)
@@ -46,7 +55,7 @@ class SectionSolver {
     return total;
   }
 
-  int largest_order() const { return largest_order_; }
+  const Orders& largest_orders() const { return largest_orders_; }
   int largest_system() const { return largest_system_; }
 
  private:
@@ -58,13 +67,20 @@ class SectionSolver {
   }
 
   // A region's conductors among all; what they hold of charge is counted on the shell around them too.
-  void add(MatrixXcd& total, const Region& region, int shell) {
+  static void add(LevelMatrices& total, const Region& region, int shell) {
     std::vector<int> numbers;
     for (const CircleResponse& circle : region.circles)
       numbers.insert(numbers.end(), circle.conductors.begin(), circle.conductors.end());
     if (numbers.empty()) return;
-    MatrixXcd c = potential_coefficients(region).inverse() * (2 * std::numbers::pi * k_epsilon_0);
-    if (region.boundary == Region::Boundary::open) {
+    const LevelMatrices potentials = potential_coefficients(region);
+    for (size_t level = 0; level < k_levels; ++level)
+      add(total[level], potentials[level], numbers, region.boundary == Region::Boundary::open, shell);
+  }
+
+  static void add(MatrixXcd& total, const MatrixXcd& potentials, const std::vector<int>& numbers, bool open,
+                  int shell) {
+    MatrixXcd c = potentials.inverse() * (2 * std::numbers::pi * k_epsilon_0);
+    if (open) {
       // No net charge: the generalised capacitance matrix after Clements, Paul and Adams.
       const Eigen::VectorXcd sums = c.rowwise().sum();
       c -= sums * sums.transpose() / sums.sum();
@@ -81,6 +97,7 @@ class SectionSolver {
 
   Region surrounding_region() {
     Region region;
+    region.tolerance = section_.tolerance;
     if (section_.surroundings == Surroundings::metal_tube) {
       region.boundary = Region::Boundary::metal_wall;
       region.radius = section_.tube_inner_radius;
@@ -95,7 +112,11 @@ class SectionSolver {
 
   Region shell_region(int circle) {
     const Shell& shell = section_.shells[static_cast<size_t>(circles_[static_cast<size_t>(circle)].index)];
-    Region region{Region::Boundary::metal_wall, shell.inner_radius, complex_permittivity(shell.filler), {}};
+    Region region{Region::Boundary::metal_wall,
+                  shell.inner_radius,
+                  complex_permittivity(shell.filler),
+                  section_.tolerance,
+                  {}};
     fill(region, circle, shell.centre, metal_walls(region));
     return region;
   }
@@ -120,18 +141,23 @@ class SectionSolver {
     int unknowns = 0;
     for (size_t i = 0; i < members.size(); ++i) {
       const bool over_plane = region.boundary == Region::Boundary::plane;
-      const int order = scaled(needed_order(facing, i, over_plane, walls, section_.tolerance / 2));
-      region.circles.push_back(response_of(members[i], region.medium, order));
-      region.circles.back().circle = {facing[i].centre, facing[i].radius, order};
-      largest_order_ = std::max(largest_order_, order);
-      unknowns += 2 * order;
+      const Orders orders = scaled(needed_order(facing, i, over_plane, walls, section_.tolerance / 2.5));
+      region.circles.push_back(response_of(members[i], region.medium, orders));
+      region.circles.back().circle = {facing[i].centre, facing[i].radius, orders};
+      if (orders.back() > largest_orders_.back()) largest_orders_ = orders;
+      unknowns += 2 * orders.back();
     }
     largest_system_ = std::max(largest_system_, unknowns);
   }
 
-  int scaled(double order) const {
-    const double bounded = std::min(std::max(order, k_smallest_order), 1.0 * k_largest_order);
-    return static_cast<int>(std::clamp(std::ceil(scale_ * std::ceil(bounded)), 1.0, 1.0 * k_largest_order));
+  Orders scaled(double order) const {
+    const double full = std::clamp(std::ceil(order), k_smallest_order, 1.0 * k_largest_order) * scale_;
+    Orders orders;
+    for (size_t level = 0; level < k_levels; ++level)
+      orders[level] = std::min(
+          static_cast<int>(level + 1 < k_levels ? std::round(full * k_fractions[level]) : std::ceil(full)),
+          k_largest_order);
+    return orders;
   }
 
   FacingCircle face_of(int member, const Eigen::Vector2d& origin, Complex medium) {
@@ -167,11 +193,11 @@ class SectionSolver {
                : section_.shells[static_cast<size_t>(circle.index)].layers;
   }
 
-  CircleResponse response_of(int member, Complex medium, int order) {
+  CircleResponse response_of(int member, Complex medium, const Orders& orders) {
     const Circle& circle = circles_[static_cast<size_t>(member)];
-    if (circle.kind == Circle::Kind::body) return response_of_body(member, medium, order);
+    if (circle.kind == Circle::Kind::body) return response_of_body(member, medium, orders);
     CircleResponse response;
-    response.reflection = metal_reflection(circle.metal_radius, layers_of(circle), medium, order);
+    response.reflection = metal_reflection(circle.metal_radius, layers_of(circle), medium, orders.back());
     response.conductors = {number_of(circle)};
     Complex rise = 0.0;  // of potential through the layers, per charge
     double radius = circle.metal_radius;
@@ -179,26 +205,30 @@ class SectionSolver {
       rise += std::log(layer.outer_radius / radius) / complex_permittivity(layer.dielectric);
       radius = layer.outer_radius;
     }
-    response.potentials = MatrixXcd::Constant(1, 1, rise);
+    response.potentials.fill(MatrixXcd::Constant(1, 1, rise));
     return response;
   }
 
-  CircleResponse response_of_body(int member, Complex medium, int order) {
+  CircleResponse response_of_body(int member, Complex medium, const Orders& orders) {
     const RoundBody& body = section_.bodies[static_cast<size_t>(circles_[static_cast<size_t>(member)].index)];
     if (children_of(member).empty()) {
       CircleResponse response;
-      response.reflection.resize(order);
-      for (int k = 1; k <= order; ++k)
+      response.reflection.resize(orders.back());
+      for (int k = 1; k <= orders.back(); ++k)
         response.reflection(k - 1) = wall_response(body, medium, k).back_outside;
       return response;
     }
-    Region inside{Region::Boundary::body_wall, body.inner_radius, complex_permittivity(body.filler), {}};
+    Region inside{Region::Boundary::body_wall,
+                  body.inner_radius,
+                  complex_permittivity(body.filler),
+                  section_.tolerance,
+                  {}};
     const Complex wall = complex_permittivity(body.wall);
     const std::vector<FacingWall> walls = {
         {body.inner_radius, std::abs(inner_surface_reflection(body, medium))},
         {body.outer_radius, std::abs((wall - medium) / (wall + medium))}};
     fill(inside, member, body.centre, walls);
-    return body_response(body, inside, medium, order, wall_order(body, inside));
+    return body_response(body, inside, medium, orders, wall_order(body, inside));
   }
 
   // Harmonics of the wall's outer surface: until its echo has died away on its way through the wall and
@@ -208,9 +238,9 @@ class SectionSolver {
     for (const CircleResponse& response : inside.circles) {
       const HarmonicCircle& circle = response.circle;
       reach = std::max(reach, std::abs(circle.centre) + circle.radius);
-      resolved = std::max(resolved, 10 + 1.5 * circle.order * body.inner_radius / circle.radius);
+      resolved = std::max(resolved, 10 + 1.5 * circle.order() * body.inner_radius / circle.radius);
     }
-    const double echo = std::log(100 / section_.tolerance) / (2 * std::log(body.outer_radius / reach));
+    const double echo = std::log(1000 / section_.tolerance) / (2 * std::log(body.outer_radius / reach));
     return std::clamp(static_cast<int>(std::ceil(std::min(std::abs(echo) * scale_, resolved))), 1,
                       2 * k_largest_order);
   }
@@ -219,7 +249,7 @@ class SectionSolver {
   std::vector<Circle> circles_;
   std::vector<std::vector<int>> children_;
   double scale_ = 1.0;
-  int largest_order_ = 0;
+  Orders largest_orders_ = {};
   int largest_system_ = 0;
 };
 
@@ -237,20 +267,23 @@ double relative_difference(const MatrixXcd& a, const MatrixXcd& b) {
   return (size.asDiagonal() * (a - b).real() * size.asDiagonal()).cwiseAbs().maxCoeff();
 }
 
-// The error at full order, told from how far the results at the fractions `low` < `high` of it lie off.
-// Model: error ~ exp(-c sqrt(order)), the slowest the laws allow; c follows from the two differences.
-double extrapolated_error(double at_low, double low, double at_high, double high) {
-  constexpr double k_rounding = 1e-14, k_safety = 2.0;
-  if (at_high <= k_rounding) return k_rounding;
-  const double x = 1 - std::sqrt(high), y = 1 - std::sqrt(low);
-  const auto ratio = [&](double c) { return std::expm1(c * x) / std::expm1(c * y); };
-  double least = 1e-3, most = 60.0;                                      // ratio falls with c
-  if (at_high / at_low >= ratio(1.0)) return std::max(at_low, at_high);  // hardly converges
-  for (int i = 0; i < 60; ++i) {
+// The error at full order, told from how far the two lower levels lie off. Model: error falls like
+// exp(-c sqrt(order)), the slowest the laws allow; c follows from the two differences.
+double extrapolated_error(const LevelMatrices& c, const Orders& orders) {
+  constexpr double k_rounding = 1e-14, k_safety = 2.5;
+  const double low = relative_difference(c[2], c[0]), high = relative_difference(c[2], c[1]);
+  if (high <= k_rounding) return k_rounding;
+  const double x = 1 - std::sqrt(1.0 * orders[1] / orders[2]), y = 1 - std::sqrt(1.0 * orders[0] / orders[2]);
+  const auto ratio = [&](double rate) { return std::expm1(rate * x) / std::expm1(rate * y); };  // falls
+  double least = 1.0, most = 60.0;
+  if (high / low >= ratio(least)) return std::max(low, high);  // hardly converges
+  for (int i = 0; i < 50; ++i) {
     const double middle = (least + most) / 2;
-    (ratio(middle) > at_high / at_low ? least : most) = middle;
+    (ratio(middle) > high / low ? least : most) = middle;
   }
-  return std::max(k_rounding, k_safety * at_high / std::expm1(least * x));
+  // Nor does it fall faster than if it had begun at 1.
+  const double from_one = std::pow(high, 1 / (1 - x));
+  return std::max({k_rounding, from_one, high / std::expm1(least * x)}) * k_safety;
 }
 
 struct Solved {
@@ -263,22 +296,14 @@ struct Solved {
 // out of hand; then the error says so.
 Solved solve(const CrossSection& section) {
   SectionSolver solver(section);
-  const auto at = [&](double scale) { return without_reference(section, solver.capacitance(scale)); };
-  double low = 1 / (k_growth * k_growth), high = 1 / k_growth, scale = 1.0;
-  MatrixXcd c_low = at(low), c_high = at(high), c = at(scale);
-  for (;;) {
-    Solved solved{c, solver.largest_order(), 0.0};
-    solved.error = extrapolated_error(relative_difference(c, c_low), low / scale,
-                                      relative_difference(c, c_high), high / scale);
-    const bool exhausted = k_growth * solver.largest_system() > k_largest_system ||
-                           k_growth * solver.largest_order() > k_largest_order;
-    if (solved.error <= section.tolerance || exhausted || scale > 20) return solved;
-    low = high;
-    high = scale;
-    scale *= k_growth;
-    c_low = c_high;
-    c_high = c;
-    c = at(scale);
+  for (double scale = 1.0;; scale *= k_growth) {
+    LevelMatrices c = solver.capacitance(scale);
+    for (MatrixXcd& matrix : c) matrix = without_reference(section, matrix);
+    const Orders& orders = solver.largest_orders();
+    const double error = extrapolated_error(c, orders) + k_left_out * section.tolerance;
+    const bool exhausted =
+        k_growth * solver.largest_system() > k_largest_system || k_growth * orders.back() > k_largest_order;
+    if (error <= section.tolerance || exhausted) return {c.back(), orders.back(), error};
   }
 }
 

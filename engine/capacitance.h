@@ -22,8 +22,8 @@ struct FieldMatrices {
 
 /// The matrices of a section, to section.tolerance, unless metal all but touches metal: work is bounded,
 /// and then the estimate says what was reached. Time grows as the cube of conductors times order: 9
-/// insulated wires in a tube take some milliseconds at 1e-4, 30 some 0.1 s. Throws std::invalid_argument as require_valid
-/// does. Method and source: engine/README.md, "Capacitance by circular harmonics".
+/// insulated wires in a tube take some milliseconds at 1e-4, 30 some 0.1 s. Throws std::invalid_argument as
+/// require_valid does. Method and source: engine/README.md, "Capacitance by circular harmonics".
 FieldMatrices field_matrices(const CrossSection& section);
 
 }  // namespace engine

@@ -4,11 +4,13 @@
 #include <Eigen/LU>
 #include <algorithm>
 #include <cmath>
+#include <optional>
 
 namespace engine {
 namespace {
 
 using Complex = std::complex<double>;
+using Eigen::Index;
 using Eigen::MatrixXcd;
 using Eigen::MatrixXd;
 using Eigen::VectorXcd;
@@ -22,68 +24,84 @@ std::vector<HarmonicCircle> circles_of(const Region& region) {
   return circles;
 }
 
-// The geometry of a region as potentials per charge-like amplitude, the medium's permittivity left out.
-// With a lossy wall around it there is an imaginary part.
+// The geometry of a region as potentials per charge-like amplitude, the medium's permittivity left out:
+// lower triangles. A lossy wall around it adds an imaginary part.
 struct Potentials {
-  int charges = 0;  // leading rows: the circles' total charges; then their harmonics
-  MatrixXd real;
-  MatrixXd imaginary;  // empty where there is none
+  explicit Potentials(const Region& region);
 
-  int harmonics() const { return static_cast<int>(real.rows()) - charges; }
-  MatrixXcd block(int row, int column, int rows, int columns) const {
-    MatrixXcd result = real.block(row, column, rows, columns).cast<Complex>();
-    if (imaginary.size() > 0) result += k_j * imaginary.block(row, column, rows, columns);
+  int charges() const { return layout.circle_count(); }
+  int harmonics(size_t level) const { return layout.size_at[level] - charges(); }
+  MatrixXcd between_charges() const {
+    MatrixXcd result = real.topLeftCorner(charges(), charges()).cast<Complex>();
+    if (imaginary.size() > 0) result += k_j * imaginary.topLeftCorner(charges(), charges());
+    return result.selfadjointView<Eigen::Lower>().toDenseMatrix();
+  }
+  MatrixXcd from_charges() const {
+    const int rows = harmonics(k_levels - 1);
+    MatrixXcd result = real.bottomLeftCorner(rows, charges()).cast<Complex>();
+    if (imaginary.size() > 0) result += k_j * imaginary.bottomLeftCorner(rows, charges());
     return result;
   }
+
+  std::vector<HarmonicCircle> circles;
+  HarmonicLayout layout;
+  MatrixXd real;
+  MatrixXd imaginary;  // empty where there is none
 };
 
-Potentials potentials_without_wall(const Region& region) {
-  const std::vector<HarmonicCircle> circles = circles_of(region);
-  Potentials potentials{static_cast<int>(circles.size()), direct_potentials(circles, region.radius), {}};
-  if (region.boundary == Region::Boundary::plane) potentials.real += plane_potentials(circles, region.radius);
-  if (region.boundary == Region::Boundary::metal_wall) potentials.real -= wall_images(circles, region.radius);
-  return potentials;
+Potentials::Potentials(const Region& region)
+    : circles(circles_of(region)), layout(circles), real(MatrixXd::Zero(layout.size(), layout.size())) {
+  add_direct(real, layout, circles, region.radius);
+  if (region.boundary == Region::Boundary::plane) add_plane_images(real, layout, circles, region.radius);
+  if (region.boundary == Region::Boundary::metal_wall)
+    add_wall_images(real, layout, circles, region.radius, -1.0);
 }
 
-// The equations of a region: what its circles do, and its ports. Ports are the charges of the
-// conductors and, for a body, the harmonics that arrive from outside.
+// Ports of a region: the charges of its conductors and, in a body, the harmonics that arrive from outside.
 struct Ports {
-  MatrixXcd drive;     // potential-like, at the circles' harmonics, times the medium's permittivity
-  MatrixXcd outgoing;  // charge-like, from the circles' harmonics, per port
-  MatrixXcd direct;    // from port to port with all the circles' harmonics at rest
+  Index size() const { return drive.cols(); }
+  MatrixXcd drive;         // potential-like, at the circles' harmonics, times the medium's permittivity
+  LevelMatrices outgoing;  // charge-like, from the circles' harmonics
+  LevelMatrices direct;    // from port to port with all the circles' harmonics at rest
 };
 
-int conductor_count(const Region& region) {
-  int count = 0;
-  for (const CircleResponse& response : region.circles) count += static_cast<int>(response.conductors.size());
-  return count;
+// Places of a circle's harmonics among those of all circles.
+std::vector<int> places(const Potentials& potentials, size_t circle, size_t level) {
+  std::vector<int> result;
+  for (int n = 0; n < potentials.circles[circle].orders[level]; ++n)
+    for (int part : {0, 1}) result.push_back(potentials.layout.row[circle][n] + part - potentials.charges());
+  return result;
 }
 
 // 1 where a conductor (column) lies in a circle (row).
 MatrixXd membership(const Region& region) {
-  MatrixXd member = MatrixXd::Zero(static_cast<Eigen::Index>(region.circles.size()), conductor_count(region));
-  Eigen::Index column = 0;
+  Index conductors = 0, column = 0;
+  for (const CircleResponse& response : region.circles)
+    conductors += static_cast<Index>(response.conductors.size());
+  MatrixXd member = MatrixXd::Zero(static_cast<Index>(region.circles.size()), conductors);
   for (size_t i = 0; i < region.circles.size(); ++i)
     for (size_t k = 0; k < region.circles[i].conductors.size(); ++k)
-      member(static_cast<Eigen::Index>(i), column++) = 1;
+      member(static_cast<Index>(i), column++) = 1;
   return member;
 }
 
 Ports charge_ports(const Region& region, const Potentials& potentials) {
-  const int circles = potentials.charges, harmonics = potentials.harmonics();
   const MatrixXd member = membership(region);
   Ports ports;
-  ports.drive = potentials.block(circles, 0, harmonics, circles) * member;
-  ports.outgoing = MatrixXcd::Zero(harmonics, member.cols());
-  ports.direct = member.transpose() * potentials.block(0, 0, circles, circles) * member / region.medium;
-  Eigen::Index row = 0, column = 0;
-  for (const CircleResponse& response : region.circles) {
-    const Eigen::Index rows = 2 * response.circle.order,
-                       n = static_cast<Eigen::Index>(response.conductors.size());
-    if (response.outgoing.size() > 0) ports.outgoing.block(row, column, rows, n) = response.outgoing;
-    if (n > 0) ports.direct.block(column, column, n, n) += response.potentials;
-    row += rows;
-    column += n;
+  ports.drive = potentials.from_charges() * member;
+  for (size_t level = 0; level < k_levels; ++level) {
+    ports.outgoing[level] = MatrixXcd::Zero(potentials.harmonics(level), member.cols());
+    ports.direct[level] = member.transpose() * potentials.between_charges() * member / region.medium;
+    Index column = 0;
+    for (size_t i = 0; i < region.circles.size(); ++i) {
+      const CircleResponse& response = region.circles[i];
+      const Index n = static_cast<Index>(response.conductors.size());
+      if (n > 0) ports.direct[level].block(column, column, n, n) += response.potentials[level];
+      if (n > 0 && response.outgoing[level].size() > 0)
+        ports.outgoing[level](places(potentials, i, level), Eigen::seqN(column, n)) =
+            response.outgoing[level];
+      column += n;
+    }
   }
   return ports;
 }
@@ -93,90 +111,94 @@ Ports charge_ports(const Region& region, const Potentials& potentials) {
 bool reflects_like_metal(const Region& region) {
   constexpr double k_most_loss = 0.3;  // of Im over Re: bounds the ratio of the loss series
   return std::all_of(region.circles.begin(), region.circles.end(), [](const CircleResponse& response) {
-    return response.coupled.size() == 0 && response.outgoing.size() == 0 &&
-           (response.reflection.real().array() < 0.0).all() &&
+    return !response.mixes_harmonics() && (response.reflection.real().array() < 0.0).all() &&
            (response.reflection.imag().array().abs() <= -k_most_loss * response.reflection.real().array())
                .all();
   });
 }
 
-// z^T x, x = (A + j B)^-1 f, from solves with the real A alone. The terms of its series in B, f^T y_k with
-// y_k = (A^-1 B)^k A^-1 f, come two to a solve by symmetry. Returns false if they do not fall.
-class LossSeries {
- public:
-  LossSeries(const Eigen::LLT<MatrixXd>& a, const VectorXd& loss, const MatrixXd& imaginary)
-      : a_(a), loss_(loss), imaginary_(imaginary) {}
+// Complex columns as real ones: the real parts, then, if there are any, the imaginary parts.
+MatrixXd real_columns(const MatrixXcd& matrix) {
+  const Index n = matrix.cols();
+  if (matrix.imag().cwiseAbs().maxCoeff() == 0.0) return matrix.real();
+  MatrixXd parts(matrix.rows(), 2 * n);
+  parts << matrix.real(), matrix.imag();
+  return parts;
+}
 
-  bool sum(const MatrixXcd& f, MatrixXcd& result) const {
-    const Eigen::Index n = f.cols();
-    const bool is_real = f.imag().cwiseAbs().maxCoeff() == 0.0;
-    MatrixXd parts(f.rows(), is_real ? n : 2 * n);
-    parts.leftCols(n) = f.real();
-    if (!is_real) parts.rightCols(n) = f.imag();
-    MatrixXd y = a_.solve(parts);
-    result = combined(parts, y, n);
-    if (loss_.cwiseAbs().maxCoeff() == 0.0 && imaginary_.size() == 0) return true;
-    const double size = result.cwiseAbs().maxCoeff();
-    Complex sign = 1.0;
-    for (int k = 0; k < 30; ++k) {
-      const MatrixXd by = times_loss(y);
-      const MatrixXd next = a_.solve(by);
-      const MatrixXcd odd = combined(y, by, n), even = combined(by, next, n);
-      result += sign * (-k_j * odd - even);
-      if (even.cwiseAbs().maxCoeff() <= 1e-13 * size) return true;
-      y = next;
-      sign = -sign;
+// x^T y of such columns.
+MatrixXcd product(const Eigen::Ref<const MatrixXd>& x, const Eigen::Ref<const MatrixXd>& y, Index n) {
+  const MatrixXd products = x.transpose() * y;
+  if (products.cols() == n) return products.cast<Complex>();
+  return (products.topLeftCorner(n, n) - products.bottomRightCorner(n, n)).cast<Complex>() +
+         k_j * (products.topRightCorner(n, n) + products.bottomLeftCorner(n, n));
+}
+
+// What losses add to f^T (A + j B)^-1 f, A = L L^T, from solves with the real A alone: the series in B has
+// the terms f^T y_k, y_k = (A^-1 B)^k A^-1 f, two from each solve by symmetry. `half` is L^-1 f.
+template <typename Factor, typename Loss>
+std::optional<MatrixXcd> loss_series(const Factor& factor, const Loss& times_loss, MatrixXd half, Index n,
+                                     double accuracy) {
+  MatrixXcd sum = MatrixXcd::Zero(n, n);
+  Complex sign = 1.0;
+  for (int k = 0; k < 30; ++k) {
+    const MatrixXd y = factor.matrixU().solve(half);
+    const MatrixXd by = times_loss(y);
+    half = factor.matrixL().solve(by);
+    const MatrixXcd even = product(half, half, n);
+    sum -= sign * (k_j * product(y, by, n) + even);
+    sign = -sign;
+    if (even.cwiseAbs().maxCoeff() <= accuracy) return sum;
+  }
+  return std::nullopt;
+}
+
+// Eliminates the harmonics where all circles reflect like metal. With amplitudes scaled by the root of
+// the reflection the system is the identity plus a contraction; its Cholesky factor holds those of the
+// lower levels. Nothing if it is not positive definite or losses do not converge.
+std::optional<LevelMatrices> eliminate_like_metal(const Region& region, const Potentials& potentials,
+                                                  const Ports& ports) {
+  const int size = potentials.harmonics(k_levels - 1);
+  VectorXd scale(size), loss(size);
+  for (size_t i = 0; i < region.circles.size(); ++i) {
+    const std::vector<int> rows = places(potentials, i, k_levels - 1);
+    for (size_t k = 0; k < rows.size(); ++k) {
+      const Complex r = region.circles[i].reflection(static_cast<Index>(k / 2));
+      scale(rows[k]) = std::abs(r) / std::sqrt(-r.real());
+      loss(rows[k]) = -r.imag() / r.real();
     }
-    return false;
   }
-
- private:
-  MatrixXd times_loss(const MatrixXd& y) const {
-    MatrixXd result = loss_.asDiagonal() * y;
-    if (imaginary_.size() > 0) result.noalias() += imaginary_ * y;
+  const auto scaled = [&](const MatrixXd& matrix) {
+    MatrixXd result = matrix.bottomRightCorner(size, size);
+    for (Index j = 0; j < size; ++j)
+      result.col(j).tail(size - j).array() *= scale.tail(size - j).array() * scale(j);
     return result;
+  };
+  MatrixXd system = scaled(potentials.real);
+  system.diagonal().array() += 1.0;
+  const Eigen::LLT<Eigen::Ref<MatrixXd>> factor(system);
+  if (factor.info() != Eigen::Success) return std::nullopt;
+
+  const Index n = ports.size();
+  const MatrixXd half = factor.matrixL().solve(real_columns(scale.asDiagonal() * ports.drive));
+  MatrixXcd losses = MatrixXcd::Zero(n, n);
+  if (loss.cwiseAbs().maxCoeff() > 0.0 || potentials.imaginary.size() > 0) {
+    const MatrixXd wall = potentials.imaginary.size() > 0 ? scaled(potentials.imaginary) : MatrixXd();
+    const auto times_loss = [&](const MatrixXd& y) {
+      MatrixXd result = loss.asDiagonal() * y;
+      if (wall.size() > 0) result += wall.selfadjointView<Eigen::Lower>() * y;
+      return result;
+    };
+    const auto sum = loss_series(factor, times_loss, half, n, region.tolerance / 100);
+    if (!sum) return std::nullopt;
+    losses = *sum;
   }
-
-  // x^T y of complex matrices whose imaginary parts, if any, stand in the columns after the first n.
-  static MatrixXcd combined(const MatrixXd& x, const MatrixXd& y, Eigen::Index n) {
-    const MatrixXd products = x.transpose() * y;
-    if (products.cols() == n) return products.cast<Complex>();
-    return (products.topLeftCorner(n, n) - products.bottomRightCorner(n, n)).cast<Complex>() +
-           k_j * (products.topRightCorner(n, n) + products.bottomLeftCorner(n, n));
+  LevelMatrices result;
+  for (size_t level = 0; level < k_levels; ++level) {
+    const auto part = half.topRows(potentials.harmonics(level));
+    result[level] = ports.direct[level] - (product(part, part, n) + losses) / region.medium;
   }
-
-  const Eigen::LLT<MatrixXd>& a_;
-  const VectorXd& loss_;
-  const MatrixXd& imaginary_;
-};
-
-// Eliminates the harmonics where all circles reflect like metal: with amplitudes scaled by the square
-// root of the reflection the system is the identity plus a contraction.
-bool eliminate_like_metal(const Region& region, const Potentials& potentials, const Ports& ports,
-                          MatrixXcd& result) {
-  const int harmonics = potentials.harmonics();
-  VectorXd scale(harmonics), loss(harmonics);
-  Eigen::Index row = 0;
-  for (const CircleResponse& response : region.circles)
-    for (int n = 0; n < response.circle.order; ++n)
-      for (int part = 0; part < 2; ++part, ++row) {
-        const Complex r = response.reflection(n);
-        scale(row) = std::abs(r) / std::sqrt(-r.real());
-        loss(row) = -r.imag() / r.real();
-      }
-  MatrixXd a =
-      scale.asDiagonal() * potentials.real.bottomRightCorner(harmonics, harmonics) * scale.asDiagonal();
-  a.diagonal().array() += 1.0;
-  MatrixXd imaginary;
-  if (potentials.imaginary.size() > 0)
-    imaginary = scale.asDiagonal() * potentials.imaginary.bottomRightCorner(harmonics, harmonics) *
-                scale.asDiagonal();
-  const Eigen::LLT<MatrixXd> factor(a);
-  if (factor.info() != Eigen::Success) return false;
-  MatrixXcd sum;
-  if (!LossSeries(factor, loss, imaginary).sum(scale.asDiagonal() * ports.drive, sum)) return false;
-  result = ports.direct - sum / region.medium;
-  return true;
+  return result;
 }
 
 template <typename Scalar>
@@ -187,53 +209,62 @@ Eigen::Matrix<Scalar, Eigen::Dynamic, Eigen::Dynamic> narrowed(const MatrixXcd& 
     return matrix;
 }
 
-// Eliminates the harmonics whatever the circles do.
+MatrixXcd reflection_matrix(const CircleResponse& response, size_t level) {
+  if (response.mixes_harmonics()) return response.coupled[level];
+  const Index size = 2 * response.circle.orders[level];
+  MatrixXcd reflection = MatrixXcd::Zero(size, size);
+  for (Index k = 0; k < size; ++k) reflection(k, k) = response.reflection(k / 2);
+  return reflection;
+}
+
+// Eliminates the harmonics of one level whatever the circles do.
 template <typename Scalar>
-MatrixXcd eliminate(const Region& region, const Potentials& potentials, const Ports& ports) {
+MatrixXcd eliminate(const Region& region, const Potentials& potentials, const Ports& ports, size_t level) {
   using Matrix = Eigen::Matrix<Scalar, Eigen::Dynamic, Eigen::Dynamic>;
-  const int circles = potentials.charges, harmonics = potentials.harmonics();
-  const Matrix t = narrowed<Scalar>(potentials.block(circles, circles, harmonics, harmonics));
-  const Matrix drive = narrowed<Scalar>(ports.drive);
-  Matrix system(harmonics, harmonics), right = narrowed<Scalar>(ports.outgoing);
-  Eigen::Index row = 0;
-  for (const CircleResponse& response : region.circles) {
-    const Eigen::Index rows = 2 * response.circle.order;
-    MatrixXcd reflection = response.coupled;
-    if (reflection.size() == 0) {
-      reflection = MatrixXcd::Zero(rows, rows);
-      for (Eigen::Index k = 0; k < rows; ++k) reflection(k, k) = response.reflection(k / 2);
-    }
-    const Matrix r = narrowed<Scalar>(reflection);
-    system.middleRows(row, rows).noalias() = -r * t.middleRows(row, rows);
-    right.middleRows(row, rows).noalias() += r * drive.middleRows(row, rows);
-    row += rows;
+  const int size = potentials.harmonics(level), charges = potentials.charges();
+  MatrixXcd all = potentials.real.block(charges, charges, size, size).cast<Complex>();
+  if (potentials.imaginary.size() > 0) all += k_j * potentials.imaginary.block(charges, charges, size, size);
+  Matrix t = narrowed<Scalar>(all);
+  t.template triangularView<Eigen::StrictlyUpper>() = t.transpose().eval();
+  const Matrix drive = narrowed<Scalar>(ports.drive.topRows(size));
+  Matrix system = Matrix::Identity(size, size), right = narrowed<Scalar>(ports.outgoing[level]);
+  for (size_t i = 0; i < region.circles.size(); ++i) {
+    const std::vector<int> rows = places(potentials, i, level);
+    const Matrix reflection = narrowed<Scalar>(reflection_matrix(region.circles[i], level));
+    system(rows, Eigen::all) -= reflection * t(rows, Eigen::all);
+    right(rows, Eigen::all) += reflection * drive(rows, Eigen::all);
   }
-  system.diagonal().array() += Scalar(1.0);
   const Matrix amplitudes = system.partialPivLu().solve(right);
   const MatrixXcd incoming = (t * amplitudes + drive).template cast<Complex>() / region.medium;
-  return ports.direct + ports.drive.transpose() * amplitudes.template cast<Complex>() / region.medium +
-         ports.outgoing.transpose() * incoming;
+  return ports.direct[level] +
+         ports.drive.topRows(size).transpose() * amplitudes.template cast<Complex>() / region.medium +
+         ports.outgoing[level].transpose() * incoming;
 }
 
 bool is_real(const Region& region, const Potentials& potentials, const Ports& ports) {
   const auto none = [](const auto& m) { return m.size() == 0 || m.imag().cwiseAbs().maxCoeff() == 0.0; };
   return potentials.imaginary.size() == 0 && region.medium.imag() == 0.0 && none(ports.drive) &&
-         none(ports.outgoing) &&
+         none(ports.outgoing.back()) &&
          std::all_of(region.circles.begin(), region.circles.end(),
-                     [&](const auto& c) { return none(c.reflection) && none(c.coupled); });
+                     [&](const auto& c) { return none(c.reflection) && none(c.coupled.back()); });
 }
 
-MatrixXcd port_matrix(const Region& region, const Potentials& potentials, const Ports& ports) {
-  MatrixXcd result;
-  if (potentials.harmonics() == 0) return ports.direct;
-  if (!reflects_like_metal(region) || !eliminate_like_metal(region, potentials, ports, result))
-    result = is_real(region, potentials, ports) ? eliminate<double>(region, potentials, ports)
-                                                : eliminate<Complex>(region, potentials, ports);
-  return (result + result.transpose()) / 2.0;
+LevelMatrices port_matrices(const Region& region, const Potentials& potentials, const Ports& ports) {
+  if (potentials.charges() == 0) return ports.direct;
+  if (reflects_like_metal(region))
+    if (const auto result = eliminate_like_metal(region, potentials, ports)) return *result;
+  const bool real = is_real(region, potentials, ports);
+  LevelMatrices result;
+  for (size_t level = 0; level < k_levels; ++level) {
+    const MatrixXcd z = real ? eliminate<double>(region, potentials, ports, level)
+                             : eliminate<Complex>(region, potentials, ports, level);
+    result[level] = (z + z.transpose()) / 2.0;
+  }
+  return result;
 }
 
-// Per row of harmonics_at_wall: a cosine and a sine of each harmonic.
-VectorXcd per_wall_row(const RoundBody& body, Complex medium, int order, Complex WallResponse::*part) {
+// One value per harmonic k of a body's wall, for its cosine and its sine.
+VectorXcd per_harmonic(const RoundBody& body, Complex medium, int order, Complex WallResponse::*part) {
   VectorXcd values(2 * order);
   for (int k = 1; k <= order; ++k)
     values(2 * k - 2) = values(2 * k - 1) = wall_response(body, medium, k).*part;
@@ -242,16 +273,14 @@ VectorXcd per_wall_row(const RoundBody& body, Complex medium, int order, Complex
 
 // The wall's inner surface acts by its exact image; what its outer surface adds falls like
 // (inner / outer radius)^(2 k) and is summed over the wall's harmonics.
-void add_body_wall(Potentials& potentials, const Region& inside, const RoundBody& body, Complex medium,
-                   const MatrixXd& at_wall) {
+void add_body_wall(Potentials& potentials, const RoundBody& body, Complex medium, const MatrixXd& at_wall) {
   const Complex image = inner_surface_reflection(body, medium);
-  const VectorXcd rest =
-      per_wall_row(body, medium, static_cast<int>(at_wall.rows() / 2), &WallResponse::back_inside).array() -
-      image;
-  const MatrixXd images = wall_images(circles_of(inside), body.inner_radius);
+  const int order = static_cast<int>(at_wall.rows() / 2);
+  const VectorXcd rest = per_harmonic(body, medium, order, &WallResponse::back_inside).array() - image;
   const auto add = [&](MatrixXd& sum, double factor, const VectorXd& weights) {
-    sum += factor * images;
-    sum.noalias() += at_wall.transpose() * weights.asDiagonal() * at_wall;
+    add_wall_images(sum, potentials.layout, potentials.circles, body.inner_radius, factor);
+    const MatrixXd weighted = weights.asDiagonal() * at_wall;
+    sum.triangularView<Eigen::Lower>() += at_wall.transpose() * weighted;
   };
   add(potentials.real, image.real(), rest.real());
   if (image.imag() == 0.0 && rest.imag().cwiseAbs().maxCoeff() == 0.0) return;
@@ -259,46 +288,55 @@ void add_body_wall(Potentials& potentials, const Region& inside, const RoundBody
   add(potentials.imaginary, image.imag(), rest.imag());
 }
 
-}  // namespace
-
-MatrixXcd potential_coefficients(const Region& region) {
-  const Potentials potentials = potentials_without_wall(region);
-  return port_matrix(region, potentials, charge_ports(region, potentials));
+// Adds the harmonics that arrive from outside a body to the ports of its inside.
+void add_waves(Ports& ports, const RoundBody& body, const Region& inside, Complex medium, int order,
+               const MatrixXd& at_wall) {
+  const Index charges = ports.size(), waves = 2 * order, circles = static_cast<Index>(inside.circles.size());
+  const VectorXcd through = per_harmonic(body, medium, order, &WallResponse::through);
+  const VectorXcd back = medium * per_harmonic(body, medium, order, &WallResponse::back_outside);
+  const MatrixXcd arriving = at_wall.topRows(waves).transpose() * through.asDiagonal();
+  const MatrixXcd at_conductors = membership(inside).transpose() * arriving.topRows(circles);
+  ports.drive.conservativeResize(Eigen::NoChange, charges + waves);
+  ports.drive.rightCols(waves) = inside.medium * arriving.bottomRows(arriving.rows() - circles);
+  for (size_t level = 0; level < k_levels; ++level) {
+    MatrixXcd direct(charges + waves, charges + waves);
+    direct << ports.direct[level], at_conductors, at_conductors.transpose(), MatrixXcd(back.asDiagonal());
+    ports.direct[level] = direct;
+    ports.outgoing[level].conservativeResize(Eigen::NoChange, charges + waves);
+    ports.outgoing[level].rightCols(waves).setZero();
+  }
 }
 
-CircleResponse body_response(const RoundBody& body, const Region& inside, Complex medium, int order,
-                             int wall_order) {
-  Potentials potentials = potentials_without_wall(inside);
-  const MatrixXd at_wall =
-      harmonics_at_wall(circles_of(inside), body.inner_radius, std::max(order, wall_order));
-  add_body_wall(potentials, inside, body, medium, at_wall);
+}  // namespace
+
+LevelMatrices potential_coefficients(const Region& region) {
+  const Potentials potentials(region);
+  return port_matrices(region, potentials, charge_ports(region, potentials));
+}
+
+CircleResponse body_response(const RoundBody& body, const Region& inside, Complex medium,
+                             const Orders& orders, int wall_order) {
+  Potentials potentials(inside);
+  const MatrixXd at_wall = harmonics_at_wall(potentials.layout, potentials.circles, body.inner_radius,
+                                             std::max(orders.back(), wall_order));
+  add_body_wall(potentials, body, medium, at_wall);
   Ports ports = charge_ports(inside, potentials);
+  const Index charges = ports.size();
+  add_waves(ports, body, inside, medium, orders.back(), at_wall);
+  const LevelMatrices z = port_matrices(inside, potentials, ports);
 
-  const Eigen::Index charges = ports.direct.cols(), waves = 2 * order;
-  const VectorXcd through = per_wall_row(body, medium, order, &WallResponse::through);
-  const MatrixXcd arriving =
-      at_wall.topRows(waves).transpose() * through.asDiagonal();  // at circles and harmonics
-  const MatrixXcd to_conductors = membership(inside).transpose() * arriving.topRows(potentials.charges);
-  ports.drive.conservativeResize(Eigen::NoChange, charges + waves);
-  ports.drive.rightCols(waves) = inside.medium * arriving.bottomRows(potentials.harmonics());
-  ports.outgoing.conservativeResize(Eigen::NoChange, charges + waves);
-  ports.outgoing.rightCols(waves).setZero();
-  MatrixXcd direct(charges + waves, charges + waves);
-  direct << ports.direct, to_conductors, to_conductors.transpose(),
-      MatrixXcd((medium * per_wall_row(body, medium, order, &WallResponse::back_outside)).asDiagonal());
-  ports.direct = direct;
-
-  const MatrixXcd z = port_matrix(inside, potentials, ports);
   CircleResponse response;
-  response.circle.order = order;
-  response.coupled = z.bottomRightCorner(waves, waves) / medium;
-  response.outgoing = z.bottomLeftCorner(waves, charges);
-  response.potentials = z.topLeftCorner(charges, charges).array();
-  if (body.outer_radius > body.inner_radius)
-    response.potentials.array() +=
-        std::log(body.outer_radius / body.inner_radius) / complex_permittivity(body.wall);
   for (const CircleResponse& circle : inside.circles)
     response.conductors.insert(response.conductors.end(), circle.conductors.begin(), circle.conductors.end());
+  const Complex rise = body.outer_radius > body.inner_radius
+                           ? std::log(body.outer_radius / body.inner_radius) / complex_permittivity(body.wall)
+                           : 0.0;
+  for (size_t level = 0; level < k_levels; ++level) {
+    const Index waves = 2 * orders[level];
+    response.coupled[level] = z[level].block(charges, charges, waves, waves) / medium;
+    response.outgoing[level] = z[level].block(charges, 0, waves, charges);
+    response.potentials[level] = z[level].topLeftCorner(charges, charges).array() + rise;
+  }
   return response;
 }
 

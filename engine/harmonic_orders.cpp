@@ -29,11 +29,13 @@ double order_of_gap(double mu, double tolerance) {
   return mu > 0.0 ? std::log(1 / tolerance) / (2 * mu) : k_unbounded;
 }
 
-// In a contact the images lose `reflection` at each bounce: error ~ exp(-3.3 sqrt(n |ln reflection|)).
-double order_of_bounces(double reflection, double tolerance) {
+// In a contact the images lose `reflection` at each bounce: between equal circles the error falls like
+// exp(-3.3 sqrt(n |ln reflection|)). What counts is the gap's curvature, 1 / r + 1 / other, against that
+// of the circle itself; the other one is negative for a wall around it.
+double order_of_bounces(double reflection, double r, double other, double tolerance) {
   const double root = std::log(1 / tolerance) / 3.3;
   if (reflection <= 0.0) return 0.0;
-  return reflection < 1.0 ? root * root / -std::log(reflection) : k_unbounded;
+  return reflection < 1.0 ? root * root / -std::log(reflection) * (1 + r / other) / 2 : k_unbounded;
 }
 
 double order_between(const FacingCircle& self, const FacingCircle& other, double tolerance) {
@@ -41,21 +43,21 @@ double order_between(const FacingCircle& self, const FacingCircle& other, double
   double cores = 0.0;
   if (self.core_radius > 0.0 && other.core_radius > 0.0)
     cores = order_of_gap(between_circles(apart, self.core_radius, other.core_radius), tolerance);
-  const double surfaces =
-      std::min(order_of_gap(between_circles(apart, self.radius, other.radius), tolerance),
-               order_of_bounces(std::sqrt(self.reflection * other.reflection), tolerance));
+  const double surfaces = std::min(
+      order_of_gap(between_circles(apart, self.radius, other.radius), tolerance),
+      order_of_bounces(std::sqrt(self.reflection * other.reflection), self.radius, other.radius, tolerance));
   return std::max(cores, surfaces);
 }
 
+// A wall is half way to the image, so the circle's and the wall's reflection together stand for one
+// bounce between circles that are alike.
 double order_at_wall(const FacingCircle& self, const FacingWall& wall, double tolerance) {
-  const double offset = std::abs(self.centre);
-  double core = 0.0;
-  if (self.core_radius > 0.0)
-    core = std::min(order_of_gap(inside_wall(offset, self.core_radius, wall.radius), tolerance),
-                    order_of_bounces(std::sqrt(wall.reflection), tolerance));
-  const double surfaces = std::min(order_of_gap(inside_wall(offset, self.radius, wall.radius), tolerance),
-                                   order_of_bounces(std::sqrt(self.reflection * wall.reflection), tolerance));
-  return std::max(core, surfaces);
+  const auto order = [&](double r, double reflection) {
+    return std::min(order_of_gap(inside_wall(std::abs(self.centre), r, wall.radius), tolerance),
+                    2 * order_of_bounces(reflection * wall.reflection, r, -wall.radius, tolerance));
+  };
+  const double core = self.core_radius > 0.0 ? order(self.core_radius, 1.0) : 0.0;
+  return std::max(core, order(self.radius, self.reflection));
 }
 
 }  // namespace
@@ -68,8 +70,6 @@ double needed_order(const std::vector<FacingCircle>& circles, size_t self, bool 
     if (!over_plane) continue;
     FacingCircle image = circles[j];
     image.centre = std::conj(image.centre);
-    // On its way to the image a field meets the plane, which is metal.
-    if (j == self) image.reflection = 1.0;
     order = std::max(order, order_between(circles[self], image, tolerance));
   }
   for (const FacingWall& wall : walls) order = std::max(order, order_at_wall(circles[self], wall, tolerance));

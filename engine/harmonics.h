@@ -2,6 +2,7 @@
 #pragma once
 
 #include <Eigen/Core>
+#include <array>
 #include <complex>
 #include <vector>
 
@@ -14,38 +15,51 @@ inline std::complex<double> complex_permittivity(const Dielectric& dielectric) {
   return dielectric.permittivity * std::complex<double>(1.0, -dielectric.loss_tangent);
 }
 
+/// Orders at which a field is truncated, ascending: two to compare with, then the full one.
+constexpr size_t k_levels = 3;
+using Orders = std::array<int, k_levels>;
+
 /// Where the harmonics of a circle are counted.
 struct HarmonicCircle {
   std::complex<double> centre;  // m, x + i y
   double radius = 0.0;          // m
-  int order = 0;                // harmonics 1..order, a cosine and a sine each
+  Orders orders = {};           // harmonics 1..order at each level, a cosine and a sine each
+
+  int order() const { return orders.back(); }
 };
 
-/// Where the unknowns of a region stand: the total charges of its circles first, then circle by circle
-/// the cosine and sine of harmonic 1, 2, ... A charge-like unknown is normalised so that the potential
-/// matrix between charge-like and potential-like amplitudes is symmetric (engine/README.md).
+/// Where the unknowns of a region stand: first the total charges of its circles, then their harmonics,
+/// those of the lowest level first, so that a lower level is a leading block. A charge-like unknown is
+/// normalised so that the potentials it makes are a symmetric matrix (engine/README.md).
 struct HarmonicLayout {
   explicit HarmonicLayout(const std::vector<HarmonicCircle>& circles);
-  int circle_count() const { return static_cast<int>(first.size()); }
-  std::vector<int> first;  // of each circle's harmonics
-  int size = 0;
+  int circle_count() const { return static_cast<int>(row.size()); }
+  int size() const { return size_at.back(); }
+  std::vector<std::vector<int>> row;       // [circle][n - 1]: the cosine of harmonic n; its sine is next
+  std::array<int, k_levels> size_at = {};  // of the leading block of each level, charges included
 };
 
-/// Potentials at every circle per unit charge-like amplitude on every circle, in empty space: self
-/// terms of the harmonics are left out. The logarithm is zero at `scale` (m).
-Eigen::MatrixXd direct_potentials(const std::vector<HarmonicCircle>& circles, double scale);
+// The next three fill in the lower triangle of a symmetric matrix with rows as in HarmonicLayout: the
+// potential at every circle per unit of charge-like amplitude, in empty space.
 
-/// The same from the images in an earthed plane at y = 0, which are to be added.
-Eigen::MatrixXd plane_potentials(const std::vector<HarmonicCircle>& circles, double scale);
+/// Adds the direct field; self terms of the harmonics are left out. The logarithm is zero at `scale` (m).
+void add_direct(Eigen::MatrixXd& potentials, const HarmonicLayout& layout,
+                const std::vector<HarmonicCircle>& circles, double scale);
 
-/// The same from the exact images in a circle of `radius` (m) around the origin, as if every harmonic
-/// k >= 1 that arrives there came back with the factor +1; a metal wall is -1 times this.
-Eigen::MatrixXd wall_images(const std::vector<HarmonicCircle>& circles, double radius);
+/// Adds the images in an earthed plane at y = 0.
+void add_plane_images(Eigen::MatrixXd& potentials, const HarmonicLayout& layout,
+                      const std::vector<HarmonicCircle>& circles, double scale);
+
+/// Adds `factor` times the exact images in a circle of `radius` (m) around the origin, as if every
+/// harmonic k >= 1 that arrives there came back unchanged; the factor of a metal wall is -1.
+void add_wall_images(Eigen::MatrixXd& potentials, const HarmonicLayout& layout,
+                     const std::vector<HarmonicCircle>& circles, double radius, double factor);
 
 /// What arrives at a circle of `radius` (m) around the origin: rows are the cosine and sine of harmonic
 /// 1..order there, columns as in HarmonicLayout. Its transpose takes a regular field scaled at `radius`
 /// to the circles.
-Eigen::MatrixXd harmonics_at_wall(const std::vector<HarmonicCircle>& circles, double radius, int order);
+Eigen::MatrixXd harmonics_at_wall(const HarmonicLayout& layout, const std::vector<HarmonicCircle>& circles,
+                                  double radius, int order);
 
 /// Outgoing over incoming amplitude of harmonics 1..order of a metal circle covered with `layers`, in
 /// `medium`, scaled at the outermost surface: -1 for bare metal.
