@@ -221,4 +221,14 @@ IslandBasis::State IslandBasis::solve(const Drive& drive) const {
   return state;
 }
 
+std::vector<Complex> IslandBasis::source_impedances(std::span<const std::pair<int, int>> pairs) const {
+  std::vector<std::vector<SparseLu::Entry>> currents;
+  for (const auto& [a, b] : pairs) {
+    std::vector<SparseLu::Entry>& entries = currents.emplace_back();
+    const Port port = drop_port(a, b, false);
+    for (int i = 0; i < port.count; ++i) entries.push_back({port.terms[i].unknown, port.terms[i].sign});
+  }
+  return factor_->quadratic_forms(currents);
+}
+
 }  // namespace engine

@@ -6,6 +6,7 @@
 #include <array>
 #include <optional>
 #include <span>
+#include <utility>
 #include <vector>
 
 #include "engine/flat_network.h"
@@ -58,6 +59,9 @@ class IslandBasis {
     double residual = 0.0;        // largest over all equations: |sum of terms| over sum of |terms|
   };
   State solve(const Drive& drive) const;
+
+  /// Source impedances (ohm) between pairs of nodes whose difference is determined, not refined.
+  std::vector<Complex> source_impedances(std::span<const std::pair<int, int>> pairs) const;
 
   const FlatNetwork& network() const { return network_; }
   const Islands& islands() const { return islands_; }

@@ -62,6 +62,13 @@ Complex SolvedNetwork::source_impedance(int a, int b) const {
   return impl_->basis.drop(impl_->basis.solve(one_ampere(a, b)), a, b);
 }
 
+std::vector<Complex> SolvedNetwork::source_impedances(std::span<const std::pair<int, int>> pairs) const {
+  std::vector<Complex> impedances = impl_->basis.source_impedances(pairs);
+  for (std::size_t i = 0; i < pairs.size(); ++i)
+    if (!impl_->basis.is_determined(pairs[i].first, pairs[i].second)) impedances[i] = k_unknown;
+  return impedances;
+}
+
 Eigen::VectorXcd SolvedNetwork::response(int a, int b) const {
   const IslandBasis& basis = impl_->basis;
   Eigen::VectorXcd volts = Eigen::VectorXcd::Constant(impl_->network.node_count, k_unknown);

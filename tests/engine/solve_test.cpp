@@ -242,6 +242,7 @@ TEST(SolvedNetwork, ReportsWhatNothingTiesToEarth) {
   EXPECT_TRUE(std::isnan(solved.volts(2).real()));
   EXPECT_TRUE(std::isnan(solved.volts(2, 5).real()));
   EXPECT_TRUE(std::isnan(solved.source_impedance(2, 0).real()));
+  EXPECT_TRUE(std::isnan(solved.source_impedances(std::vector{std::pair{2, 0}})[0].real()));
   EXPECT_NEAR(solved.volts(5).real(), 60.0, 1e-12);
   EXPECT_NEAR(solved.volts(2, 3).real(), 120.0, 1e-12);
   EXPECT_LT(relative_error(solved.source_impedance(4, 3), 0.2 + 1.0 / (k_j * k_omega * 1e-9)), 1e-12);
@@ -266,6 +267,22 @@ TEST(SolvedNetwork, ResponseAgreesWithSourceImpedance) {
   const int a = sample.floating.front(), b = sample.floating.back();
   const Eigen::VectorXcd response = solved.response(a, b);
   EXPECT_LT(relative_error(response[a] - response[b], solved.source_impedance(a, b)), 1e-10);
+}
+
+// Two ways to one answer: read off the factors, and a refined solution for each pair.
+TEST(SolvedNetwork, ManySourceImpedancesAgreeWithEach) {
+  for (const Sample& sample : {random_building(13, 14), hard_case()}) {
+    const SolvedNetwork solved(sample.network);
+    std::vector<std::pair<int, int>> pairs = sample.segments;
+    for (const int node : sample.floating) pairs.emplace_back(node, 0);
+    pairs.emplace_back(sample.floating[0], sample.floating[0]);
+    const std::vector<Complex> impedances = solved.source_impedances(pairs);
+    EXPECT_EQ(impedances.back(), Complex{});
+    for (std::size_t i = 0; i + 1 < pairs.size(); ++i) {
+      const Complex expected = solved.source_impedance(pairs[i].first, pairs[i].second);
+      EXPECT_LT(std::abs(impedances[i] - expected), 1e-9 * std::abs(expected)) << i;  // as solve.h promises
+    }
+  }
 }
 
 // Power balance: what the EMFs give is what wires, shunts, elements and sources' impedances take.
