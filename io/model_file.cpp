@@ -55,12 +55,12 @@ void collect_owners(ModelReading& reading, const YamlMap& top) {
   }
 }
 
-void read_top(ModelReading& reading, const YamlNode& tree) {
+bool read_top(ModelReading& reading, const YamlNode& tree) {
   const YamlMap top(reading.reader, tree, "",
                     {"format", "title", "frequency", "temperature", "earth_resistivity", "catalogue",
                      "supplies", "panels", "places", "runs", "alongside", "circuits", "bonds", "cuts",
                      "leaks", "instruments", "uncertainty", "limits", "stages"});
-  if (!top.is_map()) return;
+  if (!top.is_map()) return false;
   read_format(top);
   read_catalogues(reading, top);
   collect_owners(reading, top);
@@ -72,6 +72,7 @@ void read_top(ModelReading& reading, const YamlNode& tree) {
   read_stages(reading, top);
   tell_top_defaults(reading.building, top);
   tell_defaults(reading.building);
+  return true;
 }
 
 }  // namespace
@@ -85,7 +86,7 @@ ModelFile read_model_text(const std::string& text, const std::string& name,
   if (const auto tree = parse_yaml(text, name, model.faults)) {
     YamlReader reader(name, model.faults);
     ModelReading reading{reader, model.building, {}};
-    read_top(reading, *tree);
+    model.is_read = read_top(reading, *tree);
   }
   sort_by_place(model.faults);
   return model;

@@ -13,6 +13,7 @@ namespace io {
 struct ModelFile {
   netlists::Building building;
   std::vector<netlists::Fault> faults;
+  bool is_read = false;  // the file was a map of keys, whatever their faults
 };
 
 /// Reads a model from disk, catalogue files it names included. Never throws for what the file holds:

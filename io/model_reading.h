@@ -70,7 +70,9 @@ bool in_catalogue(const YamlMap& map, const YamlNode& at, const std::string& nam
   if (part.contains(name)) return true;
   std::vector<std::string> known;
   for (const auto& entry : part) known.push_back(entry.first);
-  map.error(at, what + " '" + name + "' is not in the catalogue" + netlists::nearest_hint(name, known));
+  const std::string hint = netlists::nearest_hint(name, known);
+  map.error(at, what + " '" + name + "' is not in the catalogue" +
+                    (hint.empty() ? "; 'idlewire catalogue' lists what is" : hint));
   return false;
 }
 

@@ -15,11 +15,9 @@ using netlists::InstrumentType;
 
 void warn_if_low(const YamlMap& map, std::string_view key, double ohms) {
   if (ohms < 100.0)
-    map.warn(
-        *map.find(key),
-        fmt::format(
-            "an instrument of {:g} ohm would short what it measures; is it Mohm that is meant, not mohm?",
-            ohms));
+    map.warn(*map.find(key),
+             fmt::format("an instrument of {} would show nothing; is it Mohm that is meant, not mohm?",
+                         *map.text(key)));
 }
 
 void read_ranges(const YamlMap& owner, InstrumentType& type) {

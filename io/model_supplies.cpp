@@ -64,7 +64,7 @@ std::optional<FedFrom> read_fed_from(const YamlMap& supply) {
   return fed;
 }
 
-void read_stray(const YamlMap& owner, Supply& supply) {
+void read_stray(const YamlMap& owner, const netlists::Catalogue& catalogue, Supply& supply) {
   const YamlNode* node = owner.find("stray");
   if (node == nullptr) return;
   const YamlMap map(owner.reader(), *node, owner.owner() + ": stray",
@@ -80,6 +80,12 @@ void read_stray(const YamlMap& owner, Supply& supply) {
   };
   if (lines->kind != YamlKind::sequence) return one(*lines);
   for (const YamlNode& value : lines->items) one(value);
+  const auto found = catalogue.systems.find(supply.system.text);
+  if (found == catalogue.systems.end()) return;
+  const std::size_t poles = found->second.lines.size() + (found->second.neutral ? 1 : 0);
+  if (lines->items.size() != 1 && lines->items.size() != poles)
+    map.error(*lines,
+              fmt::format("line_to_ground must have one value for all or {} values, one a pole", poles));
 }
 
 void read_impedance(const YamlMap& owner, Supply& supply) {
@@ -114,6 +120,16 @@ void check_vector_group(const YamlMap& map, const Supply& supply) {
   if (supply.angle) map.error(*map.find("angle"), "angle and vector_group say the same; give one");
 }
 
+/// What speaks of a primary needs one.
+void check_primary(const YamlMap& map, const Supply& supply) {
+  if (map.has("fed_from")) return;
+  if (!supply.vector_group.empty())
+    map.error(*map.key_node("vector_group"), "vector_group speaks of a primary, and there is no fed_from");
+  if (supply.stray_primary_to_secondary)
+    map.error(*map.key_node("stray"),
+              "stray: primary_to_secondary speaks of a primary, and there is no fed_from");
+}
+
 void read_supply(ModelReading& reading, const YamlNode& key, const YamlNode& value) {
   const YamlMap map(reading.reader, value, fmt::format("supply '{}'", key.text),
                     {"system", "grounding", "grounding_resistance", "fed_from", "stray", "impedance", "angle",
@@ -129,11 +145,12 @@ void read_supply(ModelReading& reading, const YamlNode& key, const YamlNode& val
     in_catalogue(map, *map.find("system"), system, catalogue.systems, "system");
   read_grounding(map, supply);
   supply.fed_from = read_fed_from(map);
-  read_stray(map, supply);
+  read_stray(map, catalogue, supply);
   read_impedance(map, supply);
   supply.angle = map.quantity("angle", Dimension::angle, k_angle);
   supply.vector_group = map.text("vector_group").value_or("");
   check_vector_group(map, supply);
+  check_primary(map, supply);
   supply.asynchronous = map.flag("asynchronous").value_or(false);
   supply.rating = map.quantity("rating", Dimension::apparent, k_apparent).value_or(0.0);
   reading.building.supplies.push_back(std::move(supply));

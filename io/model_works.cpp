@@ -24,8 +24,9 @@ Bond read_bond(const YamlMap& map) {
   const auto ohms = map.quantity("resistance", Dimension::resistance, k_contact);
   bond.resistance = ohms.value_or(0.0);
   if (ohms && *ohms > 10.0)
-    map.warn(*map.find("resistance"),
-             fmt::format("a bond of {:g} ohm is no bond; is it mohm that is meant, not Mohm?", *ohms));
+    map.warn(
+        *map.find("resistance"),
+        fmt::format("a bond of {} is no bond; is it mohm that is meant, not Mohm?", *map.text("resistance")));
   return bond;
 }
 

@@ -198,7 +198,8 @@ YamlMap::YamlMap(YamlReader& reader, const YamlNode& node, std::string owner,
   if (is_map())
     check_keys(allowed);
   else
-    error(node, fmt::format("must be a map of keys and values, not {}", kind_name(node.kind)));
+    error(node, fmt::format("{}must be a map of keys and values, not {}", owner_.empty() ? "the file " : "",
+                            kind_name(node.kind)));
 }
 
 void YamlMap::check_keys(const std::vector<std::string>& allowed) const {

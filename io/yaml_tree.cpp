@@ -14,6 +14,7 @@
 #include <sstream>
 #include <string_view>
 #include <unordered_map>
+#include <utility>
 
 namespace io {
 namespace {
@@ -51,10 +52,12 @@ class TreeBuilder : public YAML::EventHandler {
   void OnDocumentEnd() override {}
   void OnNull(const YAML::Mark& mark, YAML::anchor_t) override { add(mark, YamlKind::null); }
   void OnAlias(const YAML::Mark& mark, YAML::anchor_t) override {
-    refuse(mark, "an alias (*name) is not taken here; write the value out");
+    if (!std::exchange(alias_told_, true))
+      refuse(mark, "an alias (*name) is not taken here; write the value out");
     add(mark, YamlKind::null);
   }
   void OnAnchor(const YAML::Mark& mark, const std::string& name) override {
+    if (std::exchange(anchor_told_, true)) return;
     refuse(mark,
            fmt::format("an anchor (&{}) is not taken here; write the value out where it is needed", name));
   }
@@ -141,6 +144,8 @@ class TreeBuilder : public YAML::EventHandler {
   std::vector<Fault>& faults_;
   std::vector<YamlNode*> open_;
   std::size_t count_ = 0;
+  bool alias_told_ = false;  // each once: a file that uses them uses many
+  bool anchor_told_ = false;
 };
 
 /// Throws at the first event: after the one document of a file nothing may come.

@@ -182,7 +182,8 @@ void check_leak(Checks& checks, const Leak& leak) {
   checks.known(checks.places, leak.at, "leak", "place");
   const int a = checks.wire_at("", leak.between.first, leak.at, "leak");
   const int b = checks.wire_at("", leak.between.second, leak.at, "leak");
-  if (a >= 0 && a == b) checks.error(leak.mark, "leak: both ends are the same wire");
+  if (a >= 0 && a == b && leak.between.first.text != leak.between.second.text)
+    checks.error(leak.mark, "leak: both ends are the same wire");
 }
 
 }  // namespace
@@ -192,7 +193,7 @@ void check_names(Checks& checks) {
   for (const Supply& supply : building.supplies) check_supply(checks, supply);
   for (const Panel& panel : building.panels) check_panel(checks, panel);
   for (const Place& place : building.places)
-    if (!checks.places.has(place.name.text))
+    if (!checks.places.has(place.name.text) && !checks.places_doubtful)
       checks.warn(place.name.mark, fmt::format("place '{}' is at the end of no run{}", place.name.text,
                                                checks.hint(place.name.text, checks.places.all())));
   for (const Alongside& alongside : building.alongside) check_alongside(checks, alongside);

@@ -157,7 +157,9 @@ void check_landings(Checks& checks, const Circuit& circuit, const SystemType& sy
                       "'lands: {{{}: none}}' if it is left loose",
                       circuit_label(circuit), names[i], system.name, panel, names[i]));
   }
-  if (!wires.empty() && poles_used < circuit.poles.size())
+  const bool doubtful =
+      checks.circuit_doubtful[static_cast<std::size_t>(&circuit - checks.building.circuits.data())];
+  if (!doubtful && !wires.empty() && poles_used < circuit.poles.size())
     checks.warn(circuit.poles[poles_used].mark,
                 fmt::format("{}: {} of the {} poles of its breaker takes no wire", circuit_label(circuit),
                             circuit.poles.size() - poles_used, circuit.poles.size()));
@@ -170,13 +172,26 @@ bool any_run_reaches(const Checks& checks, const std::vector<Name>& runs, const 
   });
 }
 
+void check_reaches_panel(Checks& checks, const Circuit& circuit) {
+  std::vector<std::string> ends;
+  for (const Name& name : circuit.runs) {
+    const int run = checks.runs.find(name.text);
+    if (run < 0) return;  // reported where the name is
+    const Run& it = checks.building.runs[static_cast<std::size_t>(run)];
+    for (const Name* end : {&it.from, &it.to}) {
+      if (end->text.empty() || end->text == circuit.panel->text) return;
+      ends.push_back(end->text);
+    }
+  }
+  if (!ends.empty())
+    checks.error(circuit.panel->mark,
+                 fmt::format("{}: none of its runs ends at its panel '{}'{}", circuit_label(circuit),
+                             circuit.panel->text, checks.hint(circuit.panel->text, ends)));
+}
+
 void check_circuit_at_panel(Checks& checks, const Circuit& circuit) {
   if (!circuit.panel || !checks.panels.has(circuit.panel->text)) return;
-  const bool runs_known = std::all_of(circuit.runs.begin(), circuit.runs.end(),
-                                      [&](const Name& run) { return checks.runs.has(run.text); });
-  if (runs_known && !circuit.runs.empty() && !any_run_reaches(checks, circuit.runs, circuit.panel->text))
-    checks.error(circuit.panel->mark, fmt::format("{}: none of its runs ends at its panel '{}'",
-                                                  circuit_label(circuit), circuit.panel->text));
+  check_reaches_panel(checks, circuit);
   const Panel& panel =
       checks.building.panels[static_cast<std::size_t>(checks.panels.find(circuit.panel->text))];
   const Supply* supply = root_supply(checks.building, panel);

@@ -1,8 +1,8 @@
 // The runs of a wire: one piece, and a tree unless a ring is meant.
 #include <fmt/format.h>
 
+#include <algorithm>
 #include <map>
-#include <numeric>
 #include <set>
 
 #include "netlists/checks.h"
@@ -115,6 +115,8 @@ void check_circuit(Checks& checks, const Circuit& circuit, const std::vector<con
 }
 
 void check_use(Checks& checks) {
+  const auto& doubts = checks.circuit_doubtful;
+  if (std::find(doubts.begin(), doubts.end(), true) != doubts.end()) return;
   std::vector<bool> used(checks.building.runs.size(), false);
   for (const PhysicalWire& wire : checks.wiring.wires)
     for (const int run : wire.runs) used[static_cast<std::size_t>(run)] = true;

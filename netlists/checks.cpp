@@ -27,6 +27,36 @@ Checks::Checks(const Building& checked) : building(checked), wiring(netlists::wi
   for (const Run& run : building.runs)
     for (const Name* end : {&run.from, &run.to})
       if (!end->text.empty()) places.add(end->text, 0);
+  find_doubts();
+}
+
+void Checks::find_doubts() {
+  const auto run_doubtful = [&](const Name& name) {
+    const int index = runs.find(name.text);
+    if (index < 0) return true;
+    const Run& run = building.runs[static_cast<std::size_t>(index)];
+    return run.from.text.empty() || run.to.text.empty();
+  };
+  for (const Run& run : building.runs) places_doubtful |= run.from.text.empty() || run.to.text.empty();
+  for (const Circuit& circuit : building.circuits) {
+    const auto wire_doubtful = [&](const Wire& wire) {
+      return wiring.find(circuit.name.text, wire.name.text) < 0 ||
+             std::any_of(wire.runs.begin(), wire.runs.end(), run_doubtful);
+    };
+    circuit_doubtful.push_back(circuit.runs.empty() || circuit.wires.empty() ||
+                               std::any_of(circuit.runs.begin(), circuit.runs.end(), run_doubtful) ||
+                               std::any_of(circuit.wires.begin(), circuit.wires.end(), wire_doubtful));
+  }
+}
+
+/// Whether a name that leads to no wire, or one that does not reach, may be so only because of a
+/// fault in the circuits it goes through.
+bool Checks::is_doubtful(const std::string& circuit, const std::string& name) const {
+  const int own = circuits.find(circuit.empty() ? name.substr(0, name.find('.')) : circuit);
+  if (own >= 0 && circuit_doubtful[static_cast<std::size_t>(own)]) return true;
+  const int wire = wiring.find(circuit, name);
+  const int owner = wire < 0 ? -1 : wiring.wires[static_cast<std::size_t>(wire)].circuit;
+  return owner >= 0 && circuit_doubtful[static_cast<std::size_t>(owner)];
 }
 
 void Checks::error(const Mark& mark, std::string what) {
@@ -44,6 +74,7 @@ std::string Checks::hint(const std::string& word, const std::vector<std::string>
 bool Checks::known(const Names& names, const Name& name, const std::string& owner, const std::string& kind) {
   if (name.text.empty()) return false;
   if (names.has(name.text)) return true;
+  if (&names == &places && places_doubtful) return false;
   error(name.mark,
         fmt::format("{}: there is no {} '{}'{}", owner, kind, name.text, hint(name.text, names.all())));
   return false;
@@ -89,7 +120,8 @@ int Checks::wire_at(const std::string& circuit, const Name& name, const Name& at
   if (name.text.empty() || at.text.empty()) return -1;
   const int wire = wiring.find(circuit, name.text);
   if (wire >= 0) {
-    if (places.has(at.text) && !reaches(wiring.wires[static_cast<std::size_t>(wire)], at.text))
+    if (places.has(at.text) && !reaches(wiring.wires[static_cast<std::size_t>(wire)], at.text) &&
+        !is_doubtful(circuit, name.text))
       error(name.mark, fmt::format("{}: wire '{}' does not reach '{}'", owner, name.text, at.text));
     return wire;
   }
@@ -104,6 +136,7 @@ int Checks::wire_at(const std::string& circuit, const Name& name, const Name& at
                           : wire_of.name.text);
   else
     for (const std::string& known_circuit : circuits.all()) candidates.push_back(known_circuit);
+  if (std::find(candidates.begin(), candidates.end(), name.text) != candidates.end()) return -1;
   error(name.mark, fmt::format("{}: there is no wire '{}'{}", owner, name.text, hint(name.text, candidates)));
   return -1;
 }

@@ -34,6 +34,11 @@ class Checks {
   Names places;  // ends of runs, and panels
   Wiring wiring;
 
+  // What a fault of the reader's, or of a name, leaves open. It has been reported where it is; nothing
+  // more is said of what follows from it.
+  bool places_doubtful = false;        // some run has no end
+  std::vector<bool> circuit_doubtful;  // its runs or wires are not all known
+
   void error(const Mark& mark, std::string what);
   void warn(const Mark& mark, std::string what);
 
@@ -52,6 +57,8 @@ class Checks {
   std::string hint(const std::string& word, const std::vector<std::string>& candidates);
 
  private:
+  void find_doubts();
+  bool is_doubtful(const std::string& circuit, const std::string& name) const;
   bool is_bar_or_raceway(const std::string& name, const Name& at, const std::string& owner, bool& good);
 
   int hints_left_ = 100;
