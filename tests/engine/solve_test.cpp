@@ -93,6 +93,32 @@ TEST(SolvedNetwork, MatchesManyDigitsOnRandomBuildings) {
   }
 }
 
+// A whole building that no electrode ties to earth: one island, live, on capacitance alone.
+TEST(SolvedNetwork, MatchesManyDigitsOnAnIsolatedBuilding) {
+  Sample sample = random_building(51, 12);
+  ASSERT_EQ(sample.network.elements[0].b, 0);
+  sample.network.elements[0].admittance = 1e-9;
+  expect_promised(worst_errors(sample));
+}
+
+// Both sides of what counts as strong, 1e-4 S: wires of kilosiemens that hang on such loads, on a source of
+// that impedance, and two islands that such a load joins while only picofarads tie them to earth.
+TEST(SolvedNetwork, MatchesManyDigitsAtTheEdgeOfStrong) {
+  for (const double load : {0.9e-4, 1.1e-4}) {  // S
+    SCOPED_TRACE(load);
+    Sample sample = hard_case();
+    Network& network = sample.network;
+    const auto& wires = sample.wires;
+    for (Line& line : network.lines) line.length = 0.5;
+    network.elements.push_back({wires[0].back(), wires[2].back(), load});
+    network.elements.push_back({wires[4].back(), wires[5].front(), load});
+    network.node_count += 1;
+    network.sources.push_back({network.node_count - 1, 0, {30.0, 40.0}, 1 / load});
+    network.elements.push_back({network.node_count - 1, wires[2].front(), 50.0});
+    expect_promised(worst_errors(sample));
+  }
+}
+
 TEST(SolvedNetwork, MatchesManyDigitsWherePlainNodalAnalysisFails) {
   const Sample sample = hard_case();
   expect_promised(worst_errors(sample));
