@@ -33,14 +33,17 @@ struct Contribution {
 /// a victim is its response with all other groups' voltages and currents zero.
 class Attribution {
  public:
-  /// Factors the victims' network. `solved` must outlive it. A segment is an aggressor exactly where
-  /// its ends are; throws std::invalid_argument otherwise.
+  /// Factors the victims' network. `solved` must outlive it and stay where it is. A segment is an aggressor
+  /// exactly where its ends are, earth counting as one; a source at a victim has a group. Throws
+  /// std::invalid_argument otherwise. Method and source: engine/README.md, "The network".
   Attribution(const SolvedNetwork& solved, const Aggressors& aggressors);
   ~Attribution();
 
   /// The contributions to v_a - v_b, a a victim, b earth or any node. They add up to
   /// solved.volts(a, b) within 1e-9 relative. Where b is an aggressor its own voltage is counted,
   /// with its sign, in its group's conductive part. Sorted by magnitude, largest first; exact zeros left out.
+  /// None where solved.volts(a, b) is undetermined. One solve; throws std::invalid_argument if a is no
+  /// victim.
   std::vector<Contribution> contributions(int a, int b) const;
 
  private:

@@ -23,8 +23,7 @@ class NodalReference {
   using Number = std::complex<Real>;
   using Matrix = std::vector<std::vector<Number>>;
 
-  explicit NodalReference(const Network& network) : user_nodes_(network.node_count) {
-    size_ = network.node_count;
+  explicit NodalReference(const Network& network) : size_(network.node_count) {
     for (const Line& line : network.lines) size_ += (line.cells - 1) * static_cast<int>(line.from.size());
     matrix_.assign(size_, std::vector<Number>(size_));
     right_.assign(size_, Number{});
@@ -139,7 +138,6 @@ class NodalReference {
     return volts;
   }
 
-  int user_nodes_ = 0;
   int size_ = 0;
   Matrix matrix_;
   std::vector<Number> right_;
