@@ -181,6 +181,10 @@ double reach_out(const CableType& cable, const Core& core) {
 }
 
 void check_fit(const YamlMap& map, const CableType& cable) {
+  const double armour = cable.armour ? cable.armour->outer_diameter + 2 * cable.jacket_thickness : 0.0;
+  if (armour > cable.width + k_touch)
+    map.error(map.place(), fmt::format("armour and jacket come to {:.3f} mm, the outline is {:.3f} mm",
+                                       armour * 1e3, cable.width * 1e3));
   for (std::size_t i = 0; i < cable.cores.size(); ++i) {
     const Core& a = cable.cores[i];
     if (reach_out(cable, a) > k_touch)
@@ -205,7 +209,8 @@ void read_cable_entry(const CatalogueReading& reading, const YamlMap& map, Cable
   read_outline(map, cable);
   read_jacket(reading, map, cable);
   read_armour(reading, map, cable);
-  if (map.has("jacket") == map.has("armour")) map.error(map.place(), "takes either a jacket or an armour");
+  if (!map.has("jacket") && !map.has("armour")) map.error(map.place(), "has neither a jacket nor an armour");
+  if (cable.armour && cable.flat()) map.error(map.place(), "an armoured cable must be round");
   map.require("filler");
   cable.filler = read_material(reading.catalogue, map, "filler", false).value_or("");
   map.require("cores");

@@ -172,6 +172,7 @@ class Assembly {
     shell.inner_radius = cable.armour->inner_diameter / 2;
     shell.outer_radius = cable.armour->outer_diameter / 2;
     shell.metal = metal(building_.catalogue, cable.armour->material);
+    shell.dc_resistance = cable.armour->resistance;
     if (!cable.filler.empty()) shell.filler = dielectric(building_.catalogue, cable.filler);
     if (!cable.jacket.empty()) {
       shell.layers.push_back(

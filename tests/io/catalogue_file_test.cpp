@@ -7,6 +7,8 @@
 #include <complex>
 #include <numbers>
 
+#include "tests/io/readme_example.h"
+
 namespace {
 
 using netlists::CableType;
@@ -490,6 +492,22 @@ TEST(CatalogueText, RefusesCoresThatDoNotFit) {
                     "apart, radii sum to 3.302 mm")));
 }
 
+// A jacket may lie over an armour; together they must not outgrow the outline.
+TEST(CatalogueText, ReadsAJacketOverAnArmour) {
+  const std::string start = "cables: {armoured: {filler: air, source: x, diameter: ";
+  const std::string rest = R"(, jacket: {material: PVC, thickness: 1 mm},
+    armour: {material: steel, inner_diameter: 8 mm, outer_diameter: 10 mm}, cores: [{role: a, wire: THHN 12, x: 0 mm}]}})";
+  const Read result = read(start + "12 mm" + rest);
+  EXPECT_THAT(result.messages, IsEmpty());
+  EXPECT_DOUBLE_EQ(result.catalogue.cables.at("armoured").jacket_thickness, 1e-3);
+  EXPECT_THAT(read(start + "11 mm" + rest).messages,
+              ElementsAre(HasSubstr("armour and jacket come to 12.000 mm, the outline is 11.000 mm")));
+  EXPECT_THAT(read("cables: {bare: {filler: air, source: x, diameter: 5 mm, cores: [{role: a, wire: THHN 12, "
+                   "x: 0 mm}]}}")
+                  .messages,
+              ElementsAre(HasSubstr("cable 'bare': has neither a jacket nor an armour")));
+}
+
 TEST(CatalogueText, RefusesWhatIsNeitherMetalNorInsulatorOrBoth) {
   const Read result = read(R"(materials:
   odd: {permittivity: 3, resistivity: 1e-7 ohm m, source: x}
@@ -506,6 +524,18 @@ TEST(CatalogueText, WarnsOfAnEntryWithoutASource) {
   const Read result = read("loads: {kettle: {default_power: 2 kW}}\n");
   EXPECT_THAT(result.messages, ElementsAre(HasSubstr("warning: load 'kettle': no source")));
   EXPECT_DOUBLE_EQ(result.catalogue.loads.at("kettle").default_power, 2000);
+}
+
+// What the README shows is read as it stands.
+TEST(CatalogueText, ReadsTheExampleOfTheReadme) {
+  Catalogue catalogue = builtin();
+  std::vector<Fault> faults;
+  io::add_catalogue_text(io::readme_example("The catalogue"), "mine.yaml", catalogue, faults);
+  for (const Fault& fault : faults) ADD_FAILURE() << to_string(fault);
+  EXPECT_EQ(catalogue.cables.at("bell 2x1").source,
+            "data sheet of the cable on the drum, 2019; the positions measured on a cut end");
+  EXPECT_EQ(catalogue.systems.at("415Y/240").lines.size(), 3u);
+  EXPECT_EQ(catalogue.instruments.at("old needle").ranges.size(), 2u);
 }
 
 TEST(CatalogueText, NamesItsFormat) {

@@ -4,6 +4,7 @@
 #include <gtest/gtest.h>
 
 #include "io/catalogue_file.h"
+#include "tests/io/readme_example.h"
 
 namespace {
 
@@ -114,6 +115,15 @@ TEST(SectionFile, ReadsAnOpenSectionWithItsReference) {
   EXPECT_EQ(file.reference, "b");
   EXPECT_DOUBLE_EQ(file.conditions.frequency, 60.0);
   EXPECT_DOUBLE_EQ(file.section.tolerance, 1e-4);
+}
+
+// What the README shows is read as it stands.
+TEST(SectionFile, ReadsTheExampleOfTheReadme) {
+  const SectionFile file =
+      io::read_section_text(io::readme_example("The section file"), "README.md", io::builtin_catalogue());
+  EXPECT_THAT(messages(file), IsEmpty());
+  EXPECT_THAT(file.names, ElementsAre("a", "b", "armour"));
+  EXPECT_EQ(file.section.bodies.size(), 2u);
 }
 
 TEST(SectionFile, AShellCanBeTheReference) {
