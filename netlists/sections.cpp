@@ -63,6 +63,11 @@ double packing_radius(const WireType& type) {
   return type.outer_diameter() / 2 + (type.layers.empty() ? k_bare_gap : 0.0);
 }
 
+double packing_radius(const CableType& type) {
+  const bool bare = type.armour && type.jacket.empty();
+  return type.width / 2 + (bare ? k_bare_gap : 0.0);
+}
+
 // FNV-1a, so that a section's layouts depend on its content and the seed alone, on every platform.
 std::uint64_t fingerprint(const std::string& text, std::uint64_t start) {
   std::uint64_t hash = 14695981039346656037ull ^ (start * 0x9E3779B97F4A7C15ull);
@@ -247,7 +252,8 @@ struct SectionLibrary::Impl {
         const auto [slot, fresh] = cable_item.try_emplace({run, wire.circuit}, items[run].size());
         if (fresh) {
           const CableType& cable = building.catalogue.cables.at(circuit.cable->text);
-          items[run].push_back({{}, -1, &cable, circuit.name.text, "cable " + cable.name, cable.width / 2});
+          items[run].push_back(
+              {{}, -1, &cable, circuit.name.text, "cable " + cable.name, packing_radius(cable)});
         }
         Item& item = items[run][slot->second];
         if (wire.armour) {

@@ -43,6 +43,21 @@ TEST(Lower, JoinsWhatTouchesAndNothingElse) {
   EXPECT_EQ(model.lowered.network.lines[1].from.size(), 3u);  // no raceway in plastic
 }
 
+// Armour a micrometre from armour took 400 harmonics and half a minute a layout, for a capacitance
+// between two tubes that are bonded to each other.
+TEST(RunSection, KeepsBareArmourApart) {
+  const Solved model(
+      branch("circuits:\n"
+             "  M1: {panel: LP, slot: 1, cable: MC 12-2, runs: [C3], loads: []}\n"
+             "  M3: {panel: LP, slot: 3, cable: MC 12-2, runs: [C3], loads: []}\n")
+          .replace(branch("").find("  C2:"), 0, "  C3: {from: LP, to: Rack, length: 9 m, raceway: none}\n"));
+  const auto& shells = run_section(model.building, "C3", 1).section.shells;
+  ASSERT_EQ(shells.size(), 2u);
+  const double gap = (shells[0].centre - shells[1].centre).norm() - 2 * shells[0].covered_radius();
+  EXPECT_GE(gap, 99e-6);   // m, twice the 50 um that bare metal keeps on each side
+  EXPECT_LE(gap, 110e-6);  // m
+}
+
 TEST(Lower, BreakerOffLeavesTheHotOpen) {
   const Solved on(branch(k_circuit));
   EXPECT_NEAR(std::abs(on.volts("L1.hot@Room")), 120, 0.1);
