@@ -151,6 +151,7 @@ MatrixXcd returned_in(const MatrixXcd& z, int r) {
 }  // namespace
 
 Eigen::MatrixXcd series_impedance(const CrossSection& section, const ImpedanceConditions& conditions) {
+  require_valid(section);
   if (!(conditions.frequency > 0.0 && std::isfinite(conditions.frequency))) {
     throw std::invalid_argument("a series impedance needs a positive frequency, not " +
                                 std::to_string(conditions.frequency) + " Hz");

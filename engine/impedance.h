@@ -51,8 +51,7 @@ TubeImpedance tube_impedance(double inner_radius, double outer_radius, const Met
 ///
 /// Currents are taken to be spread evenly around every conductor, shell and tube: metal is no magnetic
 /// wall, and images, eddy currents and proximity effect in a neighbour are left out.
-/// The section must be valid as require_valid says. Throws std::invalid_argument where a condition is not
-/// physical.
+/// Throws std::invalid_argument as require_valid does, and where a condition is not physical.
 /// Method and source: engine/README.md, "Series impedance".
 Eigen::MatrixXcd series_impedance(const CrossSection& section, const ImpedanceConditions& conditions);
 

@@ -19,7 +19,6 @@ constexpr double k_gap = k_least_gap + 1e-9;  // m, aimed at, so that rounding c
 constexpr double k_tolerance = 1e-10;         // m, between "touches" and "does not"
 const double k_repose = std::atan(0.5);       // rad, steepest wall that a jacket's friction holds
 constexpr int k_entry_tries = 200;            // of one thing, before its places are enumerated
-constexpr int k_orders = 60;                  // tries to pack everything
 
 /// Uniform on [0, 1). The standard's own distribution differs from library to library.
 double uniform(std::mt19937_64& random) { return static_cast<double>(random() >> 11) * 0x1p-53; }
@@ -237,6 +236,11 @@ std::optional<std::vector<Vector2d>> settle(std::span<const double> radii, doubl
   return centres;
 }
 
+/// Tries to pack everything: many where each is quick and room is short, few where it takes long.
+int orders_to_try(std::size_t things) {
+  return std::max(12, 3000 / static_cast<int>(std::max<std::size_t>(things, 1)));
+}
+
 double fill(std::span<const double> radii, double tube_radius) {
   double area = 0.0;
   for (const double r : radii) area += r * r;
@@ -272,10 +276,11 @@ std::vector<Eigen::Vector2d> resting_layout(std::span<const double> radii, doubl
     }
   }
   if (fill(radii, tube_radius) > 1.0) refuse(radii, tube_radius);
-  for (int attempt = 0; attempt < k_orders; ++attempt) {
+  const int orders = orders_to_try(radii.size());
+  for (int attempt = 0; attempt < orders; ++attempt) {
     std::vector<std::size_t> order = random_order(radii.size(), random);
     // Where chance does not make room for the large ones they go in first.
-    if (attempt >= k_orders / 3) {
+    if (attempt >= orders / 3) {
       std::stable_sort(order.begin(), order.end(), [&](auto a, auto b) { return radii[a] > radii[b]; });
     }
     if (const auto centres = settle(radii, tube_radius, order, random)) return *centres;

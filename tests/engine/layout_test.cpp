@@ -6,6 +6,7 @@
 #include <algorithm>
 #include <array>
 #include <cmath>
+#include <functional>
 #include <map>
 #include <numeric>
 #include <stdexcept>
@@ -120,8 +121,8 @@ TEST(RestingLayout, NeverOverlapsAndAlwaysRests) {
   }
 }
 
-// Three quarters or more of what any packing of so few equal circles can reach (0.646 for three, 0.667 for
-// six; Graham et al. 1998, Discrete Mathematics 181, from memory). One thing may fill what it likes.
+// The NEC's largest fill of all, that of nipples; no packing of three equal circles passes 0.646, none of six
+// 0.667 (Graham et al. 1998, Discrete Mathematics 181, from memory). One thing may fill what it likes.
 TEST(RestingLayout, PacksEqualThingsToSixtyPercent) {
   std::mt19937_64 random(2);
   for (int n = 3; n <= 60; ++n) {
@@ -146,6 +147,36 @@ TEST(RestingLayout, WedgesAPairThatFillsTheBore) {
   }
 }
 
+/// Radius of the least circle that holds three discs, by Descartes' theorem on four kissing circles; where
+/// the third hides in the gap beside the two larger ones, their two diameters decide.
+double least_enclosure(Radii r) {
+  std::sort(r.begin(), r.end(), std::greater<>());
+  const double a = 1.0 / r[0], b = 1.0 / r[1], c = 1.0 / r[2];
+  const double pair = r[0] + r[1];
+  if (c >= a + b - 1.0 / pair) return pair;
+  return 1.0 / (2.0 * std::sqrt(a * b + b * c + c * a) - a - b - c);
+}
+
+// Three things of any sizes go in if, and only if, the tube is larger than the least circle round them.
+TEST(RestingLayout, PacksThreeExactlyWhereDescartesSaysTheyFit) {
+  std::mt19937_64 random(16);
+  int refused = 0;
+  for (int trial = 0; trial < 300; ++trial) {
+    const Radii radii = mixed_radii(3, k_emt_3_4, 0.5, 4.0, random);
+    const double least = least_enclosure(radii);
+    SCOPED_TRACE(trial);
+    const double roomy = 1.01 * least + 4.0 * k_least_gap;
+    const Centres centres = resting_layout(radii, roomy, random);
+    expect_no_overlap(radii, roomy, centres);
+    expect_resting(radii, roomy, centres);
+    if (trial % 30 == 0) {
+      EXPECT_THROW(resting_layout(radii, 0.999 * least, random), std::invalid_argument);
+      ++refused;
+    }
+  }
+  EXPECT_EQ(refused, 10);
+}
+
 TEST(RestingLayout, HoldsOneWireOnTheFloorWithinFriction) {
   std::mt19937_64 random(4);
   Mean slope;
@@ -167,6 +198,20 @@ TEST(RestingLayout, RepeatsFromTheSameState) {
     EXPECT_NE(a, resting_layout(radii, k_emt_3_4, other));
   }
   EXPECT_EQ(one, two);
+}
+
+// One seed gives one layout with every compiler and standard library; recorded from this program, so it shows
+// a change and no error.
+TEST(RestingLayout, StaysAsRecorded) {
+  std::mt19937_64 random(1);
+  const Centres a = resting_layout(Radii{1.651e-3, 1.651e-3, 2.083e-3, 1.41e-3}, k_emt_3_4, random);
+  const Centres expected{{-5.778834585670e-05, -5.552273322322e-03},
+                         {-7.569299140351e-04, -8.780433274004e-03},
+                         {2.866775529947e-03, -7.875451879029e-03},
+                         {6.140229867264e-03, -6.653756463018e-03}};
+  for (std::size_t i = 0; i < a.size(); ++i) EXPECT_LT((a[i] - expected[i]).norm(), 1e-12) << i;
+  EXPECT_NEAR(row_layout(Radii{1.651e-3, 1.651e-3, 2.083e-3, 1.41e-3}, 1e-3, random)[2].x(), -6.212e-3,
+              1e-12);
 }
 
 TEST(RestingLayout, HasNoLeftOrRight) {
