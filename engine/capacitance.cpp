@@ -5,6 +5,7 @@
 #include <algorithm>
 #include <array>
 #include <cmath>
+#include <limits>
 #include <numbers>
 #include <string>
 
@@ -320,15 +321,16 @@ CrossSection bare(const CrossSection& section) {
 }
 
 // The truth is symmetric, has no positive off-diagonal and no negative row sum; rounding and what the
-// tolerance leaves may break that by as much as themselves. Mean of both halves; clip; raise the diagonal.
+// tolerance leaves may break that by as much as themselves. Take the mean of both halves, clip, and raise
+// the diagonal until a row sums to no less than zero in whichever order it is added up.
 MatrixXd in_maxwell_form(const MatrixXd& computed) {
   MatrixXd c = (computed + computed.transpose()) / 2;
-  for (Eigen::Index i = 0; i < c.rows(); ++i)
-    for (Eigen::Index j = 0; j < c.cols(); ++j)
-      if (i != j) c(i, j) = std::min(c(i, j), 0.0);
+  const double rounding = 2.0 * static_cast<double>(c.rows()) * std::numeric_limits<double>::epsilon();
   for (Eigen::Index i = 0; i < c.rows(); ++i) {
-    const double others = c(i, i) - c.row(i).sum();
-    while (c.row(i).sum() < 0.0) c(i, i) = std::max(std::nextafter(c(i, i), 1.0), others);
+    double others = 0.0;
+    for (Eigen::Index j = 0; j < c.cols(); ++j)
+      if (i != j) others -= c(i, j) = std::min(c(i, j), 0.0);
+    c(i, i) = std::max(c(i, i), others * (1 + rounding));
   }
   return c;
 }

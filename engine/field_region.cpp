@@ -32,9 +32,12 @@ struct Potentials {
   int charges() const { return layout.circle_count(); }
   int harmonics(size_t level) const { return layout.size_at[level] - charges(); }
   MatrixXcd between_charges() const {
-    MatrixXcd result = real.topLeftCorner(charges(), charges()).cast<Complex>();
-    if (imaginary.size() > 0) result += k_j * imaginary.topLeftCorner(charges(), charges());
-    return result.selfadjointView<Eigen::Lower>().toDenseMatrix();
+    const auto whole = [&](const MatrixXd& lower) -> MatrixXd {
+      return lower.topLeftCorner(charges(), charges()).selfadjointView<Eigen::Lower>();
+    };
+    MatrixXcd result = whole(real).cast<Complex>();
+    if (imaginary.size() > 0) result += k_j * whole(imaginary);
+    return result;
   }
   MatrixXcd from_charges() const {
     const int rows = harmonics(k_levels - 1);

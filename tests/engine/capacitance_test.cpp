@@ -3,51 +3,17 @@
 
 #include <gtest/gtest.h>
 
-#include <Eigen/Eigenvalues>
-#include <Eigen/LU>
 #include <cmath>
 #include <numbers>
-#include <random>
-#include <sstream>
+#include <vector>
 
 #include "engine/constants.h"
+#include "tests/engine/sample_sections.h"
 
 namespace engine {
 namespace {
 
 using std::numbers::pi;
-
-RoundConductor wire(double x, double y, double radius, std::vector<Layer> layers = {}) {
-  RoundConductor conductor;
-  conductor.centre = {x, y};
-  conductor.radius = radius;
-  conductor.layers = std::move(layers);
-  return conductor;
-}
-
-CrossSection in_tube(double radius, double tolerance) {
-  CrossSection section;
-  section.surroundings = Surroundings::metal_tube;
-  section.tube_inner_radius = radius;
-  section.tube_outer_radius = 1.1 * radius;
-  section.tolerance = tolerance;
-  return section;
-}
-
-CrossSection over_plane(double tolerance) {
-  CrossSection section;
-  section.surroundings = Surroundings::plane;
-  section.tolerance = tolerance;
-  return section;
-}
-
-CrossSection in_open(int reference, double tolerance) {
-  CrossSection section;
-  section.surroundings = Surroundings::open;
-  section.reference = reference;
-  section.tolerance = tolerance;
-  return section;
-}
 
 constexpr double k_2_pi_e0 = 2 * pi * k_epsilon_0;
 
