@@ -78,6 +78,20 @@ ordered_json conductor_json(const ConductorFindings& conductor, Numbers& number)
   return out;
 }
 
+/// What each reading was loaded with, so that anyone can compute it from the open circuit.
+ordered_json instrument_json(const netlists::InstrumentType& instrument) {
+  ordered_json out;
+  out["name"] = instrument.name;
+  out["label"] = instrument.label;
+  out["indicator"] = instrument.kind == netlists::InstrumentKind::indicator;
+  out["resistance_ohm"] = instrument.resistance;
+  out["capacitance_F"] = instrument.capacitance;
+  out["ranges"] = ordered_json::array();
+  for (const auto& range : instrument.ranges)
+    out["ranges"].push_back({{"full_scale_V", range.full_scale}, {"resistance_ohm", range.resistance}});
+  return out;
+}
+
 }  // namespace
 
 std::string findings_json(const Findings& findings) {
@@ -91,6 +105,9 @@ std::string findings_json(const Findings& findings) {
   out["draws"] = 0;
   out["seed"] = findings.seed;
   out["residual"] = number.real(findings.residual, "the residual of the network solution");
+  out["instruments"] = ordered_json::array();
+  for (const auto& instrument : findings.instruments)
+    out["instruments"].push_back(instrument_json(instrument));
   out["conductors"] = ordered_json::array();
   for (const ConductorFindings& conductor : findings.conductors)
     out["conductors"].push_back(conductor_json(conductor, number));

@@ -286,7 +286,7 @@ class Ports:
 
 def instrument_admittance(instrument, range_volts, omega):
     resistance = instrument["resistance_ohm"]
-    for r in instrument.get("ranges", []):
+    for r in instrument["ranges"]:
         if r["full_scale_V"] == range_volts:
             resistance = r["resistance_ohm"]
     return mpc(1 / mpf(resistance), omega * mpf(instrument["capacitance_F"]))

@@ -124,7 +124,7 @@ class Reference(unittest.TestCase):
         }
         findings = {
             "format": "idlewire-findings/1",
-            "instruments": [{"name": "dmm", "resistance_ohm": 1e7, "capacitance_F": 100e-12}],
+            "instruments": [{"name": "dmm", "resistance_ohm": 1e7, "capacitance_F": 100e-12, "ranges": []}],
             "conductors": [{"id": "f", "places": [place]}],
         }
         status, said = self.run_on(network, findings)
