@@ -142,8 +142,8 @@ class Judge {
     found.source_impedance = port.impedance;
     found.short_circuit = port.impedance == 0.0 ? 0.0 : std::abs(port.volts / port.impedance);
     add_readings(found, port, found.reference, true);
-    const int neutral = neutral_at(path, access);
-    if (neutral >= 0) add_readings(found, port_between(access.node, neutral), path.neutral, true);
+    const auto [neutral, neutral_id] = neutral_at(path, access);
+    if (neutral >= 0) add_readings(found, port_between(access.node, neutral), neutral_id, true);
     if (!stiff(owner)) {
       found.contributions = contributions(access.node, reference, owner);
       add_partners(found, path, access, neutral);
@@ -159,21 +159,18 @@ class Judge {
     return entry->second;
   }
 
-  int node_of(const std::string& wire, const std::string& place) const {
-    const auto pieces = by_wire_.find(wire);
-    if (pieces == by_wire_.end()) return -1;
+  // The own neutral's node at a place and the id of the piece that is reached there: a cut neutral goes
+  // by another name beyond its cut. Node -1 where there is none.
+  std::pair<int, std::string> neutral_at(const ConductorPath& path, const Access& access) const {
+    const auto pieces = by_wire_.find(path.neutral);
+    if (path.neutral.empty() || pieces == by_wire_.end()) return {-1, ""};
     for (const ConductorPath* piece : pieces->second) {
-      for (const Access& access : piece->access) {
-        if (access.place == place && !undetermined_.count(access.node)) return access.node;
+      for (const Access& reached : piece->access) {
+        if (reached.place != access.place || undetermined_.count(reached.node)) continue;
+        return {reached.node == access.node ? -1 : reached.node, piece->id};
       }
     }
-    return -1;
-  }
-
-  int neutral_at(const ConductorPath& path, const Access& access) const {
-    if (path.neutral.empty()) return -1;
-    const int node = node_of(path.neutral, access.place);
-    return node == access.node ? -1 : node;
+    return {-1, ""};
   }
 
   void add_readings(PlaceFindings& found, const Port& port, const std::string& reference, bool judged) {

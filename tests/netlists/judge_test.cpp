@@ -40,6 +40,32 @@ TEST(Judge, OpenNeutralBehindALoadIsThroughLoad) {
   EXPECT_THAT(neutral.settle.why, HasSubstr("treat as live"));
 }
 
+// A reading once named the whole wire as its reference beyond a cut, where only a piece of it is reached.
+TEST(Judge, ReferencesNamePiecesThatAreReachedThere) {
+  const Solved model(
+      "supplies: {T1: {system: 120/240}}\npanels: {LP: {supply: T1}}\n"
+      "runs:\n"
+      "  C1: {from: LP, to: Box, length: 15 m, raceway: EMT 1/2}\n"
+      "  C2: {from: Box, to: Room, length: 5 m, raceway: EMT 1/2}\n"
+      "circuits:\n"
+      "  L1: {panel: LP, slot: 1, wires: {hot: THHN 12, neutral: THHN 12, ground: THHN 12}, runs: [C1, C2],\n"
+      "       loads: [{at: Room, between: [hot, neutral], kind: resistive, power: 900 W}]}\n"
+      "cuts: [{at: Box, wire: L1.neutral, side: C1}]\n");
+  const Findings findings = model.findings();
+  for (const ConductorFindings& found : findings.conductors) {
+    for (const PlaceFindings& at : found.places) {
+      for (const Reading& reading : at.readings) {
+        const std::string name = reading.reference + "@" + at.place;
+        EXPECT_TRUE(reading.reference == "earth" || model.lowered.at.count(name)) << found.id << ": " << name;
+      }
+    }
+  }
+  // No current flows: from the hot to the loose end of its own neutral there is nothing to read.
+  const ConductorFindings& hot = conductor(findings, "L1.hot");
+  EXPECT_LT(reading(hot, "Room", "dmm", "L1.neutral/C2"), 0.1);
+  EXPECT_GT(reading(hot, "Box", "dmm", "L1.neutral"), 119);
+}
+
 // Ohm's law: 120 V behind R into 3 kohm reads 120 * 3 / (3 + R / 1 kohm).
 TEST(Judge, HighResistanceLoadsHideAnOpenNeutralFromLowImpedance) {
   const ConductorFindings at_22k =
