@@ -93,7 +93,7 @@ std::optional<double> read_resistance_per_length(const YamlMap& map, std::string
 
 std::optional<std::string> read_material(const netlists::Catalogue& catalogue, const YamlMap& map,
                                          std::string_view key, bool metal) {
-  const auto name = map.text(key);
+  auto name = map.text(key);
   if (!name) return std::nullopt;
   const auto names = names_of(catalogue.materials, metal);
   const auto found = catalogue.materials.find(*name);

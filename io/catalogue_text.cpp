@@ -313,7 +313,7 @@ std::vector<std::string> other_names(const std::map<std::string, T>& entries, co
   return names;
 }
 
-std::string with_caution(std::string text, int width) {
+std::string with_caution(const std::string& text, int width) {
   return text + "\n" + paragraph("", netlists::caution(), width);
 }
 
@@ -338,7 +338,7 @@ std::string catalogue_list(const Catalogue& catalogue, int width) {
   text += paragraph(
       "", "A name shows its entry in full with its sources, as in: idlewire catalogue 'THHN 12'", width);
   text += paragraph("", "A kind shows its entries one a line, as in: idlewire catalogue cables", width);
-  return with_caution(std::move(text), width);
+  return with_caution(text, width);
 }
 
 std::string catalogue_entry(const Catalogue& catalogue, const std::string& name, int width) {
@@ -352,7 +352,7 @@ std::string catalogue_entry(const Catalogue& catalogue, const std::string& name,
         (text.empty() ? "" : "\n") + in_full(one, found->second, other_names(entries, found->second), width);
   });
   if (text.empty()) refuse(catalogue, name);
-  return with_caution(std::move(text), width);
+  return with_caution(text, width);
 }
 
 }  // namespace io

@@ -121,7 +121,7 @@ class SectionReading {
   /// The entry's name, due and no one else's.
   std::string read_name(const YamlMap& map, const char* kind) {
     map.require("name");
-    const std::string name = map.text("name").value_or("");
+    std::string name = map.text("name").value_or("");
     if (!name.empty() && !taken_.insert(name).second)
       map.error(*map.find("name"), fmt::format("the name '{}' is taken", name));
     if (name == "enclosure" || name == "plane")
