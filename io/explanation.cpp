@@ -51,6 +51,14 @@ std::string verdict(const ConductorFindings& conductor, int width) {
   return out;
 }
 
+std::string felt(const ConductorFindings& conductor, int width) {
+  double most = 0.0;
+  for (const PlaceFindings& place : conductor.places) most = std::max(most, place.short_circuit);
+  if (summed_up(conductor) || most < k_felt) return "";
+  return paragraph("", fmt::format("Whatever drives it, a current of {} can be felt.", amperes_text(most)),
+                   width);
+}
+
 std::string settles(const ConductorFindings& conductor, int width) {
   const netlists::Settle& settle = conductor.settle;
   std::string text;
@@ -60,8 +68,9 @@ std::string settles(const ConductorFindings& conductor, int width) {
   else
     text = "none of the model's instruments. ";
   if (!settle.why.empty()) text += printable(settle.why) + (settle.why.back() == '.' ? " " : ". ");
-  if (settle.instrument) text += "A reading below this limit never proves the conductor dead.";
-  return "\n" + paragraph("What settles it  ", text, width, 2);
+  if (settle.instrument && settle.why.find("never proves") == std::string::npos)
+    text += "A reading below this limit never proves the conductor dead.";
+  return "\n" + paragraph("What settles it  ", text, width, 2) + felt(conductor, width);
 }
 
 std::string thevenin(const PlaceFindings& place, int width) {

@@ -85,14 +85,18 @@ const netlists::ContributionEntry* main_aggressor(const PlaceFindings& place) {
   return best;
 }
 
-const Reading* highest_to_a_conductor(const PlaceFindings& place, const std::string& but_not) {
+std::string telling_partner(const ConductorFindings& conductor, const PlaceFindings& place) {
+  const std::string circuit = conductor.id.substr(0, conductor.id.find('.') + 1);
   const Reading* best = nullptr;
+  const auto weight = [&](const Reading& reading) {
+    const bool own = !circuit.empty() && reading.reference.rfind(circuit, 0) == 0;
+    return std::pair(own, order_by(reading.volts));
+  };
   for (const Reading& reading : place.readings) {
-    const bool other = reading.reference != "ground" && reading.reference != "earth" &&
-                       reading.reference != but_not && !reading.indicator && !reading.judged;
-    if (other && (best == nullptr || order_by(reading.volts) > order_by(best->volts))) best = &reading;
+    if (reading.judged || reading.indicator || reading.reference == place.reference) continue;
+    if (best == nullptr || weight(reading) > weight(*best)) best = &reading;
   }
-  return best;
+  return best == nullptr ? "" : best->reference;
 }
 
 std::string condition_in_words(const ConductorFindings& conductor) {

@@ -8,6 +8,9 @@
 
 namespace io {
 
+/// A current that people feel, IEC 60479-1, threshold of perception.
+inline constexpr double k_felt = 0.5e-3;  // A
+
 /// The place and reference a row of the table speaks of: those of the judged reading that misleads
 /// and lies nearest to the reading the conductor is ranked by; where nothing misleads, those of the
 /// highest open-circuit voltage. `place` is null where the conductor can be reached nowhere.
@@ -27,10 +30,10 @@ std::vector<std::string> voltmeters(const netlists::Findings& findings);
 /// The entry that contributes most, "others" aside where it can be; null without contributions.
 const netlists::ContributionEntry* main_aggressor(const netlists::PlaceFindings& place);
 
-/// The highest reading of a voltmeter against another conductor, which may settle a case without
-/// being judged; null where there is none.
-const netlists::Reading* highest_to_a_conductor(const netlists::PlaceFindings& place,
-                                                const std::string& but_not);
+/// The conductor against which a voltmeter reads most at a place, without being judged: one of the
+/// same circuit where there is one. Such a reading may settle a case. "" where there is none.
+std::string telling_partner(const netlists::ConductorFindings& conductor,
+                            const netlists::PlaceFindings& place);
 
 /// What the condition says, in words: "floating: neither a wire, ...".
 std::string condition_in_words(const netlists::ConductorFindings& conductor);

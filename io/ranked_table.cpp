@@ -76,27 +76,31 @@ std::string aggressor_text(const PlaceFindings& place) {
                      volts_text(std::abs(entry->volts)), volts_text(std::abs(place.open_circuit)));
 }
 
-std::string settle_text(const ConductorFindings& conductor, const Focus& at) {
-  std::string out;
-  if (conductor.isolated_supply) out += " No reading to ground settles it.";
-  if (conductor.isolated_supply && at.place != nullptr) {
-    const Reading* reading = highest_to_a_conductor(*at.place, "");
-    if (reading != nullptr)
-      out += fmt::format(" To {}: {} reads {}.", printable(reading->reference), reading->instrument,
-                         volts_text(reading->volts));
-  }
-  if (conductor.isolated_supply) return out;
-  if (!conductor.settle.instrument)
-    return conductor.rank ? " None of these instruments settles it: see explain." : "";
-  return fmt::format(" Settled by {}: expect {}, treat as live above {}.", *conductor.settle.instrument,
-                     volts_text(conductor.settle.expect), limit_text(conductor.settle.treat_as_live_above));
-}
-
+/// "dmm 61 V, low_impedance 0.35 V": what each instrument reads at the place against the reference.
 std::string readings_text(const Focus& at, const std::vector<std::string>& instruments) {
   std::string out;
-  for (const std::string& name : instruments)
-    out += (out.empty() ? " Reads " : ", ") + name + " " + reading_text(at, name);
-  return out.empty() ? "" : out + ".";
+  for (const std::string& name : instruments) {
+    const std::string volts = reading_text(at, name);
+    if (volts != "-") out += (out.empty() ? "" : ", ") + name + " " + volts;
+  }
+  return out;
+}
+
+std::string settle_text(const ConductorFindings& conductor, const Focus& at,
+                        const std::vector<std::string>& instruments) {
+  if (conductor.isolated_supply) {
+    const std::string partner = at.place == nullptr ? "" : telling_partner(conductor, *at.place);
+    const std::string readings = partner.empty() ? "" : readings_text({at.place, partner}, instruments);
+    return " No reading to ground settles it." +
+           (readings.empty() ? "" : fmt::format(" To {}: {}.", printable(partner), readings));
+  }
+  if (!conductor.settle.instrument)
+    return !conductor.rank ? ""
+           : conductor.misleads == Misleads::false_dead
+               ? " Treat as live; no reading here settles it: see explain."
+               : " None of these instruments settles it: see explain.";
+  return fmt::format(" Settled by {}: expect {}, treat as live above {}.", *conductor.settle.instrument,
+                     volts_text(conductor.settle.expect), limit_text(conductor.settle.treat_as_live_above));
 }
 
 std::string indicators_text(const Focus& at) {
@@ -121,11 +125,16 @@ std::string details(const ConductorFindings& conductor, const std::vector<std::s
   text += condition_text(conductor) + ".";
   if (conductor.not_predicted) text += " Not predicted: expect more than shown.";
   if (at.place != nullptr) {
-    if (readings_below) text += readings_text(at, instruments);
+    if (readings_below) text += " Reads " + readings_text(at, instruments) + ".";
     if (at.reference != "ground") text += " Readings to " + printable(at.reference) + ".";
+    if (at.reference != at.place->reference)
+      text += fmt::format(" To {}: {}.", at.place->reference,
+                          readings_text({at.place, at.place->reference}, instruments));
     text += indicators_text(at) + aggressor_text(*at.place);
+    if (at.place->short_circuit >= k_felt && conductor.condition == Condition::floating)
+      text += fmt::format(" {} can be felt.", amperes_text(at.place->short_circuit));
   }
-  text += settle_text(conductor, at);
+  text += settle_text(conductor, at, instruments);
   return paragraph(std::string(k_indent, ' '), text, width);
 }
 

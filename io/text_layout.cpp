@@ -79,7 +79,7 @@ std::string volts_text(double volts, int digits) {
 std::string ohms_text(double ohms, int digits) {
   static constexpr std::array<Unit, 5> units{
       {{1e9, "Gohm"}, {1e6, "Mohm"}, {1e3, "kohm"}, {1.0, "ohm"}, {1e-3, "mohm"}}};
-  return in_units(ohms, units, digits);
+  return ohms == 0.0 ? "0 ohm" : in_units(ohms, units, digits);
 }
 
 std::string amperes_text(double amperes, int digits) {

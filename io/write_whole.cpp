@@ -60,24 +60,6 @@ int flush_folder(const std::string& folder) {
   return error;
 }
 
-void replace_file(const std::string& path, const std::string& content) {
-  std::string beside = path + ".XXXXXX";
-  const int file = ::mkostemp(beside.data(), O_CLOEXEC);
-  if (file < 0) fail(path, errno);
-  int error = write_all(file, content);
-  if (error == 0 && ::fchmod(file, rights_for(path)) != 0) error = errno;
-  if (error == 0 && ::fsync(file) != 0) error = errno;
-  if (::close(file) != 0 && error == 0) error = errno;
-  if (error == 0 && ::rename(beside.c_str(), path.c_str()) != 0) error = errno;
-  if (error != 0) {
-    ::unlink(beside.c_str());
-    fail(path, error);
-  }
-  const std::string folder = std::filesystem::path(path).parent_path().string();
-  error = flush_folder(folder.empty() ? "." : folder);
-  if (error != 0) fail(path, error);
-}
-
 /// A link is followed, so that the file it points to is replaced and the link stays.
 std::string without_links(const std::string& path) {
   char* resolved = ::realpath(path.c_str(), nullptr);
@@ -85,6 +67,26 @@ std::string without_links(const std::string& path) {
   std::string result = resolved;
   std::free(resolved);
   return result;
+}
+
+/// Messages name the path as the user gave it.
+void replace_file(const std::string& given, const std::string& content) {
+  const std::string path = without_links(given);
+  std::string beside = path + ".XXXXXX";
+  const int file = ::mkostemp(beside.data(), O_CLOEXEC);
+  if (file < 0) fail(given, errno);
+  int error = write_all(file, content);
+  if (error == 0 && ::fchmod(file, rights_for(path)) != 0) error = errno;
+  if (error == 0 && ::fsync(file) != 0) error = errno;
+  if (::close(file) != 0 && error == 0) error = errno;
+  if (error == 0 && ::rename(beside.c_str(), path.c_str()) != 0) error = errno;
+  if (error != 0) {
+    ::unlink(beside.c_str());
+    fail(given, error);
+  }
+  const std::string folder = std::filesystem::path(path).parent_path().string();
+  error = flush_folder(folder.empty() ? "." : folder);
+  if (error != 0) fail(given, error);
 }
 
 }  // namespace
@@ -112,7 +114,7 @@ void write_whole(const std::string& path, const std::string& content) {
   struct stat old {};
   const bool exists = ::stat(path.c_str(), &old) == 0;
   if (exists && !S_ISREG(old.st_mode)) return write_through(path, content);
-  replace_file(without_links(path), content);
+  replace_file(path, content);
 }
 
 }  // namespace io
