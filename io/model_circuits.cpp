@@ -14,6 +14,17 @@ using netlists::Name;
 using netlists::PolePosition;
 using netlists::Wire;
 
+// What no circuit comes near, and what keeps a check that compares each with each from taking minutes.
+constexpr std::size_t k_most_wires = 1000;
+constexpr std::size_t k_most_runs = 10000;
+
+std::string nearest_owner(const ModelReading& reading, const std::string& word) {
+  if (reading.owners.size() > 1000) return "";  // a large model full of slips must not take minutes
+  std::vector<std::string> names(reading.owners.begin(), reading.owners.end());
+  std::sort(names.begin(), names.end());
+  return netlists::nearest_hint(word, names);
+}
+
 void take_type_or_alias(ModelReading& reading, const YamlMap& owner, const YamlNode& node,
                         const std::string& text, Wire& wire) {
   const auto& types = reading.building.catalogue.wires;
@@ -29,11 +40,9 @@ void take_type_or_alias(ModelReading& reading, const YamlMap& owner, const YamlN
   std::vector<std::string> known;
   for (const auto& entry : types) known.push_back(entry.first);
   if (dot != std::string::npos && netlists::nearest(text, known).empty()) {
-    known.assign(reading.owners.begin(), reading.owners.end());
-    std::sort(known.begin(), known.end());
     const std::string circuit = text.substr(0, dot);
     owner.error(node, fmt::format("wire '{}': there is no circuit '{}'{}", wire.name.text, circuit,
-                                  netlists::nearest_hint(circuit, known)));
+                                  nearest_owner(reading, circuit)));
     return;
   }
   owner.error(node, fmt::format("wire '{}': wire type '{}' is not in the catalogue{}", wire.name.text, text,
@@ -59,6 +68,11 @@ Wire read_wire(ModelReading& reading, const YamlMap& owner, const YamlNode& key,
   map.require("type");
   if (const auto text = map.text("type")) take_type_or_alias(reading, owner, *map.find("type"), *text, wire);
   wire.runs = names(map, "runs", "[C1, C2]");
+  if (wire.runs.size() > k_most_runs) {
+    map.error(*map.find("runs"),
+              fmt::format("lies in {} runs; at most {} are taken", wire.runs.size(), k_most_runs));
+    wire.runs.clear();
+  }
   wire.isolated_ground = map.flag("isolated_ground").value_or(false);
   return wire;
 }
@@ -94,9 +108,8 @@ void read_poles(ModelReading& reading, const YamlMap& map, Circuit& circuit) {
 /// The pole that a key of `breaker: {A: on, B: off}` means: by its line or its slot.
 std::optional<std::size_t> pole_named(const ModelReading& reading, const Circuit& circuit,
                                       const std::string& key) {
-  const auto* panel = circuit.panel ? find_panel(reading.building, circuit.panel->text) : nullptr;
-  const auto* supply = panel != nullptr ? root_supply(reading.building, *panel) : nullptr;
-  const auto* system = supply != nullptr ? system_of(reading.building, *supply) : nullptr;
+  const auto found = reading.systems.find(circuit.panel ? circuit.panel->text : "");
+  const auto* system = found != reading.systems.end() ? found->second : nullptr;
   for (std::size_t i = 0; i < circuit.poles.size(); ++i) {
     const PolePosition& pole = circuit.poles[i];
     if (pole.slot && std::to_string(*pole.slot) == key) return i;
@@ -201,12 +214,19 @@ void read_circuit(ModelReading& reading, const YamlNode& key, const YamlNode& va
   read_cable(reading, map, circuit);
   for (Wire& wire : read_wires(reading, map)) circuit.wires.push_back(std::move(wire));
   check_wire_names(map, circuit);
+  if (circuit.wires.size() > k_most_wires)
+    map.error(key, fmt::format("has {} wires; at most {} are taken", circuit.wires.size(), k_most_wires));
   if (map.is_map() && !map.has("cable") && !map.has("wires")) map.error(key, "needs wires or a cable");
   map.require("runs");
   circuit.runs = names(map, "runs", "[C1, C2]");
   if (const YamlNode* runs = map.find("runs");
       runs != nullptr && runs->kind == YamlKind::sequence && runs->items.empty())
     map.error(*runs, "runs is empty: a circuit lies in one run at least");
+  if (circuit.runs.size() > k_most_runs) {
+    map.error(*map.find("runs"),
+              fmt::format("lies in {} runs; at most {} are taken", circuit.runs.size(), k_most_runs));
+    circuit.runs.clear();
+  }
   circuit.ring = map.flag("ring").value_or(false);
   read_lands(reading, map, circuit);
   read_loads(reading, map, circuit);
@@ -227,6 +247,11 @@ std::vector<Wire> read_wires(ModelReading& reading, const YamlMap& owner) {
 }
 
 void read_circuits(ModelReading& reading, const YamlMap& top) {
+  const auto supplies = root_supplies(reading.building);
+  for (std::size_t i = 0; i < supplies.size(); ++i)
+    if (supplies[i] != nullptr)
+      reading.systems.emplace(reading.building.panels[i].name.text,
+                              system_of(reading.building, *supplies[i]));
   if (const YamlNode* node = top.find("circuits"))
     for_each_entry(reading.reader, *node, "circuits",
                    [&](const YamlNode& key, const YamlNode& value) { read_circuit(reading, key, value); });

@@ -3,6 +3,7 @@
 
 #include <optional>
 #include <string>
+#include <unordered_map>
 #include <unordered_set>
 #include <utility>
 #include <vector>
@@ -17,6 +18,7 @@ struct ModelReading {
   YamlReader& reader;
   netlists::Building& building;
   std::unordered_set<std::string> owners;  // circuits, and panels with feeders: who has wires
+  std::unordered_map<std::string, const netlists::SystemType*> systems = {};  // by panel
 };
 
 // Bounds that no building passes: they catch slips of unit and sign, and keep the arithmetic sound.

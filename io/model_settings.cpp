@@ -73,6 +73,11 @@ void read_instruments(ModelReading& reading, const YamlMap& top) {
   if (list == nullptr) return;
   if (list->empty())
     top.error(*top.find("instruments"), "instruments is empty; leave it out for the usual ones");
+  constexpr std::size_t k_most = 50;
+  if (list->size() > k_most) {
+    top.error(*top.find("instruments"), fmt::format("instruments: at most {} are taken", k_most));
+    return;
+  }
   for (const YamlNode& node : *list) {
     const std::size_t before = instruments.size();
     if (node.kind == YamlKind::map)

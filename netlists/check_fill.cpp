@@ -6,6 +6,7 @@
 #include <numbers>
 #include <random>
 #include <stdexcept>
+#include <unordered_set>
 
 #include "engine/layout.h"
 #include "netlists/checks.h"
@@ -37,6 +38,9 @@ std::vector<std::vector<Thing>> things_by_run(const Checks& checks) {
   }
   return things;
 }
+
+constexpr std::size_t k_most_things = 1000;  // in one run
+constexpr double k_densest = 0.9069;         // of a plane filled with equal circles, pi / sqrt(12)
 
 constexpr double circle_area(double diameter) { return std::numbers::pi / 4 * diameter * diameter; }
 
@@ -76,12 +80,17 @@ void check_run_fill(Checks& checks, const Run& run, const std::vector<Thing>& th
   const double tube = type.kind == RacewayKind::wireway ? 2 * std::sqrt(inner_area(type) / std::numbers::pi)
                                                         : type.inner_diameter;
   constexpr double k_certain_to_fit = 0.45;  // below this a packing of round things is found at once
-  const bool overfull =
-      fill >= 1.0 || (fill > k_certain_to_fit && run.layout.empty() && !can_be_packed(things, tube));
+  constexpr std::size_t k_most_tried = 60;
+  const bool try_it = things.size() <= k_most_tried && fill > k_certain_to_fit && run.layout.empty();
+  const bool overfull = fill >= 1.0 || (things.size() > k_most_tried && fill >= k_densest) ||
+                        (try_it && !can_be_packed(things, tube));
   const std::string what =
       fmt::format("run '{}': {} {} fill {:.0f} % of its '{}'", run.name.text, things.size(),
                   things.size() == 1 ? "conductor or cable" : "conductors and cables", 100 * fill, type.name);
-  if (overfull)
+  if (things.size() > k_most_things)
+    checks.error(run.name.mark, fmt::format("run '{}' holds {} conductors and cables; at most {} are taken",
+                                            run.name.text, things.size(), k_most_things));
+  else if (overfull)
     checks.error(run.raceway.mark, what + ": they do not go in");
   else if (fill > allowed * (1 + 1e-9))
     checks.warn(run.raceway.mark, fmt::format("{}; at most {:.0f} % is usual", what, 100 * allowed));
@@ -95,8 +104,9 @@ void check_layout_names(Checks& checks, const Run& run, const std::vector<Thing>
       checks.error(run.name.mark,
                    fmt::format("run '{}': layout has no position for '{}'", run.name.text, thing.name));
   }
+  const std::unordered_set<std::string> there(names.begin(), names.end());
   for (const auto& entry : run.layout)
-    if (std::find(names.begin(), names.end(), entry.first) == names.end())
+    if (!there.contains(entry.first))
       checks.error(run.name.mark, fmt::format("run '{}': layout: '{}' does not lie in it{}", run.name.text,
                                               entry.first, checks.hint(entry.first, names)));
 }
@@ -139,7 +149,7 @@ void check_fill(Checks& checks) {
   for (std::size_t i = 0; i < things.size(); ++i) {
     const Run& run = checks.building.runs[i];
     check_run_fill(checks, run, things[i]);
-    if (run.layout.empty()) continue;
+    if (run.layout.empty() || things[i].size() > k_most_things) continue;
     check_layout_names(checks, run, things[i]);
     check_layout_room(checks, run, things[i]);
   }

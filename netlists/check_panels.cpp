@@ -11,50 +11,70 @@
 namespace netlists {
 namespace {
 
-/// Follows each panel's feeders upwards; a circle is reported once, at its first panel in the file.
-void check_feeder_circles(Checks& checks) {
-  std::set<std::string> told;
-  for (const Panel& panel : checks.building.panels) {
-    std::vector<std::string> way{panel.name.text};
-    const Panel* at = &panel;
-    while (at != nullptr && at->feeder && way.size() <= checks.building.panels.size()) {
-      const int from = checks.panels.find(at->feeder->from.text);
-      at = from < 0 ? nullptr : &checks.building.panels[static_cast<std::size_t>(from)];
-      if (at == nullptr) break;
-      way.push_back(at->name.text);
-      if (at == &panel) break;
+/// Follows `up` (an index, or -1) from each of n things; every circle is given to `tell` once, from its
+/// first member in the file. Each thing is walked over once.
+template <class Up, class Tell>
+void find_circles(std::size_t n, Up up, Tell tell) {
+  std::vector<std::size_t> walk(n, 0);  // the walk, from 1, that first came by
+  for (std::size_t start = 0; start < n; ++start) {
+    int at = static_cast<int>(start);
+    while (at >= 0 && walk[static_cast<std::size_t>(at)] == 0) {
+      walk[static_cast<std::size_t>(at)] = start + 1;
+      at = up(static_cast<std::size_t>(at));
     }
-    if (at != &panel || way.size() < 2 || told.contains(panel.name.text)) continue;
-    told.insert(way.begin(), way.end());
-    checks.error(panel.feeder->from.mark,
-                 fmt::format("panel '{}' is fed in a circle: {}", panel.name.text, fmt::join(way, " from ")));
+    if (at < 0 || walk[static_cast<std::size_t>(at)] != start + 1) continue;
+    std::vector<std::size_t> circle;
+    const auto first = static_cast<std::size_t>(at);
+    do {
+      circle.push_back(static_cast<std::size_t>(at));
+      at = up(static_cast<std::size_t>(at));
+    } while (static_cast<std::size_t>(at) != first);
+    std::rotate(circle.begin(), std::min_element(circle.begin(), circle.end()), circle.end());
+    tell(circle);
   }
 }
 
-/// The supply behind a transformer's primary.
-const Supply* supply_upstream(const Checks& checks, const Supply& supply) {
-  if (!supply.fed_from) return nullptr;
-  const int circuit = checks.circuits.find(supply.fed_from->circuit.text);
-  if (circuit < 0) return nullptr;
-  const auto& panel_name = checks.building.circuits[static_cast<std::size_t>(circuit)].panel;
-  const Panel* panel = panel_name ? find_panel(checks.building, panel_name->text) : nullptr;
-  return panel != nullptr ? root_supply(checks.building, *panel) : nullptr;
+/// "A from B from A", the middle of a long one left out.
+template <class Thing>
+std::string circle_words(const std::vector<Thing>& things, const std::vector<std::size_t>& circle) {
+  std::string words;
+  for (std::size_t i = 0; i < circle.size(); ++i) {
+    if (i == 8 && circle.size() > 10) words += "... from ";
+    if (i < 8 || i + 1 == circle.size() || circle.size() <= 10)
+      words += things[circle[i]].name.text + " from ";
+  }
+  return words + things[circle[0]].name.text;
 }
 
+void check_feeder_circles(Checks& checks) {
+  const auto& panels = checks.building.panels;
+  const auto up = [&](std::size_t p) {
+    return panels[p].feeder && !panels[p].supply ? checks.panels.find(panels[p].feeder->from.text) : -1;
+  };
+  find_circles(panels.size(), up, [&](const std::vector<std::size_t>& circle) {
+    const Panel& panel = panels[circle[0]];
+    checks.error(panel.feeder->from.mark, fmt::format("panel '{}' is fed in a circle: {}", panel.name.text,
+                                                      circle_words(panels, circle)));
+  });
+}
+
+/// From a transformer to the supply behind its primary.
 void check_supply_circles(Checks& checks) {
-  std::set<std::string> told;
-  for (const Supply& supply : checks.building.supplies) {
-    std::vector<std::string> way{supply.name.text};
-    const Supply* at = supply_upstream(checks, supply);
-    for (; at != nullptr && at != &supply && way.size() <= checks.building.supplies.size();
-         at = supply_upstream(checks, *at))
-      way.push_back(at->name.text);
-    if (at != &supply || told.contains(supply.name.text)) continue;
-    told.insert(way.begin(), way.end());
-    way.push_back(supply.name.text);
-    checks.error(supply.fed_from->circuit.mark, fmt::format("supply '{}' is fed in a circle: {}",
-                                                            supply.name.text, fmt::join(way, " from ")));
-  }
+  const auto& supplies = checks.building.supplies;
+  const auto up = [&](std::size_t s) {
+    if (!supplies[s].fed_from) return -1;
+    const int circuit = checks.circuits.find(supplies[s].fed_from->circuit.text);
+    if (circuit < 0) return -1;
+    const auto& panel = checks.building.circuits[static_cast<std::size_t>(circuit)].panel;
+    const Supply* supply = panel ? checks.supply_of_panel(panel->text) : nullptr;
+    return supply != nullptr ? static_cast<int>(supply - supplies.data()) : -1;
+  };
+  find_circles(supplies.size(), up, [&](const std::vector<std::size_t>& circle) {
+    const Supply& supply = supplies[circle[0]];
+    checks.error(
+        supply.fed_from->circuit.mark,
+        fmt::format("supply '{}' is fed in a circle: {}", supply.name.text, circle_words(supplies, circle)));
+  });
 }
 
 std::string line_list(const SystemType& system) {
@@ -192,9 +212,7 @@ void check_reaches_panel(Checks& checks, const Circuit& circuit) {
 void check_circuit_at_panel(Checks& checks, const Circuit& circuit) {
   if (!circuit.panel || !checks.panels.has(circuit.panel->text)) return;
   check_reaches_panel(checks, circuit);
-  const Panel& panel =
-      checks.building.panels[static_cast<std::size_t>(checks.panels.find(circuit.panel->text))];
-  const Supply* supply = root_supply(checks.building, panel);
+  const Supply* supply = checks.supply_of_panel(circuit.panel->text);
   const SystemType* system = supply != nullptr ? system_of(checks.building, *supply) : nullptr;
   if (system == nullptr) return;
   check_poles(checks, circuit, *system);
@@ -210,7 +228,7 @@ void check_feeder(Checks& checks, const Panel& panel) {
   for (const std::string& end : {panel.name.text, panel.feeder->from.text})
     if (!panel.feeder->runs.empty() && !any_run_reaches(checks, panel.feeder->runs, end))
       checks.error(panel.feeder->mark, fmt::format("{}: none of its runs ends at panel '{}'", label, end));
-  const Supply* supply = root_supply(checks.building, panel);
+  const Supply* supply = checks.supply_of_panel(panel.name.text);
   const SystemType* system = supply != nullptr ? system_of(checks.building, *supply) : nullptr;
   if (system == nullptr) return;
   std::size_t lines = 0;

@@ -4,6 +4,8 @@
 
 #include <algorithm>
 
+#include "netlists/plan.h"
+
 namespace netlists {
 
 void Names::add(const std::string& name, int index) {
@@ -27,7 +29,13 @@ Checks::Checks(const Building& checked) : building(checked), wiring(netlists::wi
   for (const Run& run : building.runs)
     for (const Name* end : {&run.from, &run.to})
       if (!end->text.empty()) places.add(end->text, 0);
+  supply_of_panel_ = root_supplies(building);
   find_doubts();
+}
+
+const Supply* Checks::supply_of_panel(const std::string& panel) const {
+  const int index = panels.find(panel);
+  return index < 0 ? nullptr : supply_of_panel_[static_cast<std::size_t>(index)];
 }
 
 void Checks::find_doubts() {
@@ -68,7 +76,9 @@ void Checks::warn(const Mark& mark, std::string what) {
 }
 
 std::string Checks::hint(const std::string& word, const std::vector<std::string>& candidates) {
-  return hints_left_-- > 0 ? nearest_hint(word, candidates) : "";
+  if (candidates.size() > hint_work_) return "";
+  hint_work_ -= candidates.size();
+  return nearest_hint(word, candidates);
 }
 
 bool Checks::known(const Names& names, const Name& name, const std::string& owner, const std::string& kind) {
@@ -134,10 +144,9 @@ int Checks::wire_at(const std::string& circuit, const Name& name, const Name& at
       candidates.push_back(
           circuit.empty() ? fmt::format("{}.{}", name.text.substr(0, name.text.find('.')), wire_of.name.text)
                           : wire_of.name.text);
-  else
-    for (const std::string& known_circuit : circuits.all()) candidates.push_back(known_circuit);
   if (std::find(candidates.begin(), candidates.end(), name.text) != candidates.end()) return -1;
-  error(name.mark, fmt::format("{}: there is no wire '{}'{}", owner, name.text, hint(name.text, candidates)));
+  error(name.mark, fmt::format("{}: there is no wire '{}'{}", owner, name.text,
+                               hint(name.text, index >= 0 ? candidates : circuits.all())));
   return -1;
 }
 

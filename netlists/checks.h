@@ -50,10 +50,15 @@ class Checks {
   /// fault, or where a point that is no wire is meant (ground, earth, a neutral bar, a raceway).
   int wire_at(const std::string& circuit, const Name& name, const Name& at, const std::string& owner);
 
+  /// The supply a panel hangs on through its feeders, by the index of the panel; nullptr where they lead
+  /// nowhere or in a circle.
+  const Supply* supply_of_panel(const std::string& panel) const;
+
   bool touches(int run, const std::string& place) const;
   bool reaches(const PhysicalWire& wire, const std::string& place) const;
 
-  /// The nearest of the names, for the first faults only: a junk file must not take minutes.
+  /// The nearest of the names, for as many faults as a bound on the work allows: a junk file must not
+  /// take minutes.
   std::string hint(const std::string& word, const std::vector<std::string>& candidates);
 
  private:
@@ -61,7 +66,8 @@ class Checks {
   bool is_doubtful(const std::string& circuit, const std::string& name) const;
   bool is_bar_or_raceway(const std::string& name, const Name& at, const std::string& owner, bool& good);
 
-  int hints_left_ = 100;
+  std::vector<const Supply*> supply_of_panel_;
+  std::size_t hint_work_ = 1'000'000;  // names to compare with, in all
 };
 
 std::string circuit_label(const Circuit& circuit);

@@ -3,6 +3,7 @@
 #include <algorithm>
 #include <cmath>
 #include <complex>
+#include <unordered_map>
 
 #include "netlists/wiring.h"
 
@@ -45,6 +46,39 @@ const Supply* root_supply(const Building& building, const Panel& panel) {
     at = find_panel(building, at->feeder->from.text);
   }
   return nullptr;
+}
+
+std::vector<const Supply*> root_supplies(const Building& building) {
+  enum class State : unsigned char { fresh, met, known };
+  const std::size_t n = building.panels.size();
+  std::unordered_map<std::string, std::size_t> index;
+  for (std::size_t i = 0; i < n; ++i) index.emplace(building.panels[i].name.text, i);
+  std::unordered_map<std::string, const Supply*> supplies;
+  for (const Supply& supply : building.supplies) supplies.emplace(supply.name.text, &supply);
+  std::vector<State> states(n, State::fresh);
+  std::vector<const Supply*> roots(n, nullptr);
+  for (std::size_t start = 0; start < n; ++start) {
+    std::vector<std::size_t> way;
+    const Supply* root = nullptr;
+    for (std::size_t at = start; at < n;) {
+      if (states[at] == State::known) root = roots[at];
+      if (states[at] != State::fresh) break;
+      states[at] = State::met;
+      way.push_back(at);
+      const Panel& panel = building.panels[at];
+      if (panel.supply) {
+        const auto found = supplies.find(panel.supply->text);
+        root = found == supplies.end() ? nullptr : found->second;
+      }
+      const auto from = panel.supply || !panel.feeder ? index.end() : index.find(panel.feeder->from.text);
+      at = from == index.end() ? n : from->second;
+    }
+    for (const std::size_t panel : way) {
+      states[panel] = State::known;
+      roots[panel] = root;
+    }
+  }
+  return roots;
 }
 
 const SystemType* system_of(const Building& building, const Supply& supply) {

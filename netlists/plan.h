@@ -16,6 +16,10 @@ const Circuit* find_circuit(const Building& building, const std::string& name);
 /// The supply a panel hangs on, through its feeders; nullptr where they lead nowhere or in a circle.
 const Supply* root_supply(const Building& building, const Panel& panel);
 
+/// The same for every panel, in their order, in one walk: each panel is visited once, however many
+/// hang on each other.
+std::vector<const Supply*> root_supplies(const Building& building);
+
 /// The catalogue entry of a supply's system; nullptr if it is not there.
 const SystemType* system_of(const Building& building, const Supply& supply);
 

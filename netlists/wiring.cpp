@@ -1,6 +1,7 @@
 #include "netlists/wiring.h"
 
 #include <algorithm>
+#include <unordered_map>
 
 namespace netlists {
 namespace {
@@ -106,18 +107,29 @@ class Collector {
   }
 
   // An alias may point to an alias; a wire that is used in more runs than its owner names lies there.
+  // Each alias is walked over once, however long their chains; those that lead nowhere stay unresolved.
   void resolve_aliases() {
-    bool progress = true;
-    while (progress) {
-      progress = false;
-      for (const Alias& alias : aliases_) {
-        const auto target = wiring_.by_name.find(alias.target);
-        if (target == wiring_.by_name.end() || wiring_.by_name.count(alias.id)) continue;
-        add_runs(wiring_.wires[target->second], alias.runs);
-        wiring_.by_name[alias.id] = target->second;
-        progress = true;
+    std::unordered_map<std::string, std::size_t> index;
+    for (std::size_t i = 0; i < aliases_.size(); ++i) index.emplace(aliases_[i].id, i);
+    std::vector<bool> seen(aliases_.size(), false);
+    for (std::size_t start = 0; start < aliases_.size(); ++start) {
+      std::vector<std::size_t> way;
+      for (std::size_t at = start; !seen[at];) {
+        seen[at] = true;
+        way.push_back(at);
+        const auto next = index.find(aliases_[at].target);
+        if (next == index.end()) break;
+        at = next->second;
       }
+      for (; !way.empty(); way.pop_back()) resolve(aliases_[way.back()]);
     }
+  }
+
+  struct Alias;
+  void resolve(const Alias& alias) {
+    const auto target = wiring_.by_name.find(alias.target);
+    if (target == wiring_.by_name.end() || !wiring_.by_name.emplace(alias.id, target->second).second) return;
+    add_runs(wiring_.wires[target->second], alias.runs);
   }
 
   struct Alias {

@@ -7,6 +7,7 @@
 #include <algorithm>
 #include <filesystem>
 #include <fstream>
+#include <functional>
 #include <iterator>
 #include <sstream>
 
@@ -77,6 +78,73 @@ TEST(MangledModel, IsNeverMoreThanRefused) {
       ++tried;
     }
   EXPECT_GT(refused, tried / 2);  // most bytes of a model mean something
+}
+
+// Long chains, long lists and long files of slips. Each is harmless if its cost grows with its length, and
+// a hang if it grows with the square: 20000 to the square is 4e8 lookups, for each fault.
+class Monster : public testing::Test {
+ protected:
+  static constexpr int k_size = 20000;
+  static std::string repeat(const std::function<std::string(int)>& line) {
+    std::string text;
+    for (int i = 0; i < k_size; ++i) text += line(i);
+    return text;
+  }
+  static std::string number(int i) { return std::to_string(i); }
+  static std::size_t errors(const std::string& text) {
+    return static_cast<std::size_t>(
+        std::ranges::count_if(check_model_text(text, "monster").faults,
+                              [](const auto& f) { return f.severity == netlists::Severity::error; }));
+  }
+  const std::string head_ = "format: idlewire/1\nsupplies:\n  T1: {system: 208Y/120}\n";
+  const std::string runs_ = "runs:\n  C1: {from: P0, to: A, length: 1 m, raceway: none}\n";
+};
+
+TEST_F(Monster, ChainOfFeeders) {
+  const auto panel = [](int i) {
+    return "  P" + number(i) + ": {feeder: {from: P" + number(i + 1) + ", wires: {line1: THHN 2}, runs: [F" +
+           number(i) + "]}}\n";
+  };
+  const auto run = [](int i) {
+    return "  F" + number(i) + ": {from: P" + number(i + 1) + ", to: P" + number(i) +
+           ", length: 1 m, raceway: none}\n";
+  };
+  const std::string body = "panels:\n" + repeat(panel);
+  const std::string end = "  P" + number(k_size) + ": ";
+  EXPECT_EQ(errors(head_ + body + end + "{supply: T1}\nruns:\n" + repeat(run)), 0u);
+  const std::string circle = "{feeder: {from: P0, wires: {line1: THHN 2}, runs: [F0]}}\nruns:\n";
+  EXPECT_GE(errors(head_ + body + end + circle + repeat(run)), 1u);
+}
+
+TEST_F(Monster, ChainOfAliases) {
+  const auto circuit = [](int i) {
+    return "  k" + number(i) + ": {wires: {w: k" + number(i + 1) + ".w}, runs: [C1]}\n";
+  };
+  const std::string model = head_ + runs_ + "circuits:\n" + repeat(circuit);
+  EXPECT_EQ(errors(model + "  k" + number(k_size) + ": {wires: {w: THHN 12}, runs: [C1]}\n"), 0u);
+  EXPECT_GE(errors(model + "  k" + number(k_size) + ": {wires: {w: k0.w}, runs: [C1]}\n"), 1u);
+}
+
+TEST_F(Monster, ManySlips) {
+  const auto circuit = [](int i) {
+    return "  k" + number(i) + ": {panel: LP" + number(i) + ", slot: 1, wires: {a: k" + number(i) +
+           "x.w}, rnus: [C" + number(i) + "], runs: [C" + number(i + 2) + "]}\n";
+  };
+  EXPECT_GE(errors(head_ + runs_ + "circuits:\n" + repeat(circuit)), 3u * k_size);
+}
+
+TEST_F(Monster, ManyWiresInOneRunAndManyRunsOfOneWire) {
+  const auto wire = [](int i) { return "w" + number(i) + ": THHN 12, "; };
+  EXPECT_GE(errors(head_ + runs_ + "circuits:\n  k: {runs: [C1], wires: {" + repeat(wire) + "z: THHN 12}}\n"),
+            1u);
+  const auto run = [](int i) {
+    return "  R" + number(i) + ": {from: N" + number(i) + ", to: N" + number(i + 1) +
+           ", length: 1 m, raceway: none}\n";
+  };
+  const auto name = [](int i) { return "R" + number(i) + ", "; };
+  EXPECT_EQ(errors(head_ + "runs:\n" + repeat(run) + "circuits:\n  k: {wires: {a: THHN 12}, runs: [" +
+                   repeat(name) + "]}\n"),
+            1u);
 }
 
 }  // namespace
