@@ -46,8 +46,10 @@ std::string check_report(const netlists::Building& building, const std::vector<s
                       building.supplies.size() == 1 ? "supply" : "supplies",
                       counted(building.panels.size(), "panel"), counted(building.runs.size(), "run"),
                       counted(building.circuits.size(), "circuit"), counted(building.stages.size(), "stage"));
-  text += list_of("Defaults in force:", building.defaults);
-  text += list_of("Assumptions:", assumptions);
+  std::vector<std::string> lines = building.defaults;
+  for (const std::string& line : assumptions)
+    if (std::find(lines.begin(), lines.end(), line) == lines.end()) lines.push_back(line);
+  text += list_of("Defaults and assumptions in force:", lines);
   return text + netlists::caution() + "\n";
 }
 

@@ -17,8 +17,9 @@ ModelFile check_model_text(const std::string& text, const std::string& name);
 /// or "" where there is nothing to say.
 std::string fault_report(const std::vector<netlists::Fault>& faults);
 
-/// What `check` prints of a model without errors: what it holds, every default in force, and
-/// `assumptions`, what lowering it took for granted; then the caution. Ends in a newline.
+/// What `check` prints of a model without errors: what it holds, every default in force and what
+/// lowering it took for granted (Lowered::assumptions, which hold the defaults too: each is printed
+/// once); then the caution. Ends in a newline.
 std::string check_report(const netlists::Building& building, const std::vector<std::string>& assumptions);
 
 }  // namespace io

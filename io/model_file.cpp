@@ -70,8 +70,7 @@ bool read_top(ModelReading& reading, const YamlNode& tree) {
   read_circuits(reading, top);
   read_connections(reading, top);
   read_stages(reading, top);
-  tell_top_defaults(reading.building, top);
-  tell_defaults(reading.building);
+  tell_defaults(reading.building, top);
   return true;
 }
 

@@ -43,9 +43,8 @@ void read_circuits(ModelReading& reading, const YamlMap& top);     // circuits
 void read_connections(ModelReading& reading, const YamlMap& top);  // bonds, cuts, leaks
 void read_stages(ModelReading& reading, const YamlMap& top);       // stages
 
-/// Fill Building::defaults: with what the top of the file leaves open, with what its entries do.
-void tell_top_defaults(netlists::Building& building, const YamlMap& top);
-void tell_defaults(netlists::Building& building);
+/// Fills Building::defaults with what the top of the file leaves open.
+void tell_defaults(netlists::Building& building, const YamlMap& top);
 
 // Helpers of several sections.
 

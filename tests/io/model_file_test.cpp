@@ -7,10 +7,12 @@
 
 #include <filesystem>
 #include <fstream>
+#include <iterator>
 #include <numbers>
 
 #include "io/catalogue_file.h"
 #include "io/check_report.h"
+#include "netlists/findings.h"
 
 namespace io {
 namespace {
@@ -287,9 +289,7 @@ TEST(ReadModel, TellsEveryDefault) {
   EXPECT_THAT(model.faults, IsEmpty());
   EXPECT_THAT(model.building.defaults,
               ElementsAre("frequency 60 Hz", "temperature 20 degC", "earth resistivity 100 ohm m",
-                          "instruments dmm, low_impedance and analog_5k",
-                          "clearance to an earthed plane 50 mm: runs C1",
-                          "loads not stated, none taken in the nominal case: circuits LP2-7"));
+                          "instruments dmm, low_impedance and analog_5k"));
   ASSERT_EQ(model.building.instruments.size(), 3u);
   EXPECT_EQ(model.building.circuits[0].breaker, std::vector<bool>{true});
 }
@@ -317,6 +317,18 @@ TEST(ReadModel, TakesAnotherCatalogue) {
   EXPECT_THAT(words(model.faults),
               ElementsAre("f:3:16: error: supply 'T1': system '208Y/120' is not in the catalogue; 'idlewire "
                           "catalogue' lists what is"));
+}
+
+// What the README shows a user is a model that works, every key of it.
+TEST(ReadModel, TakesTheModelOfTheReadme) {
+  std::ifstream stream(fs::path(IDLEWIRE_TESTS).parent_path() / "io" / "README.md");
+  const std::string readme{std::istreambuf_iterator<char>(stream), {}};
+  const auto begin = readme.find("format: idlewire/1\n");
+  ASSERT_NE(begin, std::string::npos);
+  const ModelFile model = check_model_text(readme.substr(begin, readme.find("```", begin) - begin), "readme");
+  EXPECT_THAT(words(model.faults), IsEmpty());
+  EXPECT_EQ(model.building.circuits.size(), 7u);
+  EXPECT_EQ(model.building.stages.size(), 3u);
 }
 
 class Files : public testing::Test {
@@ -385,6 +397,16 @@ TEST_F(Files, RefusesAFileWithoutPermission) {
   int status = 1;
   ASSERT_EQ(waitpid(child, &status, 0), child);
   EXPECT_TRUE(WIFEXITED(status) && WEXITSTATUS(status) == 0);
+}
+
+TEST(CheckReport, TellsEachAssumptionOnceAndTheCaution) {
+  netlists::Building building;
+  building.title = "Harrowmere Works";
+  building.defaults = {"frequency 60 Hz"};
+  EXPECT_EQ(check_report(building, {"frequency 60 Hz", "a tray is a plane"}),
+            "Harrowmere Works\n0 supplies, 0 panels, 0 runs, 0 circuits, 0 stages\n"
+            "Defaults and assumptions in force:\n  frequency 60 Hz\n  a tray is a plane\n" +
+                netlists::caution() + "\n");
 }
 
 TEST(FaultReport, CountsErrorsAndWarnings) {
