@@ -174,6 +174,18 @@ class OfficeFloor(unittest.TestCase):
         self.assertGreaterEqual(len([c for c in circuits if c.startswith(("LP2-", "RP2-"))]), 40)
         self.assertEqual([w for w in findings["warnings"] if "fill" in w], [])
 
+    def test_the_result_shown_in_the_readme_is_what_is_printed(self):
+        run = subprocess.run([PROGRAM, "predict", str(tree.TOP / "examples" / self.MODEL), "--quiet"],
+                             capture_output=True, text=True, check=True)
+        readme = (tree.TOP / "README.md").read_text(encoding="utf-8")
+        result = readme.split("## A result")[1].split("\n## ")[0]
+        shown = [line[4:] for line in result.splitlines() if line.startswith("    ")]
+        # The line of stage, model hash and date changes by itself.
+        shown = [line for line in shown if not line.startswith("Stage:")]
+        printed = [line for line in run.stdout.splitlines() if line and not line.startswith("Stage:")]
+        self.assertGreater(len(shown), 10)
+        self.assertEqual(shown, printed[: len(shown)])
+
     def test_what_nothing_feeds_floats_and_only_that_misleads(self):
         findings = predict(self.MODEL)
         for conductor in ("old-H2.hot", "old-floor.ig", "spare-H1.a", "spare-H6.b", "LP2-5.hot", "RP2-10.hot"):

@@ -155,7 +155,8 @@ TEST(RankedTable, RowHasEveryFact) {
 TEST(RankedTable, SaysThatNoReadingToGroundSettlesAnIsolatedSupply) {
   const std::string table = without_breaks(io::ranked_table(tests::sample_findings(), 100, false));
   EXPECT_THAT(table, HasSubstr("energised by IT1, an isolated supply."));
-  EXPECT_THAT(table, HasSubstr("No reading to ground settles it. To ISO-1.second: dmm 120 V, low_impedance 120 V."));
+  EXPECT_THAT(table,
+              HasSubstr("No reading to ground settles it. To ISO-1.second: dmm 120 V, low_impedance 120 V."));
 }
 
 TEST(RankedTable, ExpectsMoreBehindADrive) {
