@@ -71,7 +71,7 @@ std::optional<std::pair<Vector2d, Vector2d>> crossings(const Circle& a, const Ci
 /// One thing on its way to rest.
 class Descent {
  public:
-  Descent(const std::vector<Circle>& circles, double friction_angle, Vector2d start)
+  Descent(const std::vector<Circle>& circles, double friction_angle, const Vector2d& start)
       : circles_(circles), friction_angle_(friction_angle), p_(start) {}
 
   /// Falls and slides until it rests; nothing if it does not within so many moves, which rounding

@@ -14,9 +14,9 @@ std::string name_of(const Circle& circle) {
   return std::string(kind) + " " + std::to_string(circle.index);
 }
 
-std::string in_mm(double metres) {
+std::string in_mm(double length) {
   std::ostringstream text;
-  text << std::setprecision(9) << metres * 1e3 << " mm";
+  text << std::setprecision(9) << length * 1e3 << " mm";
   return text.str();
 }
 

@@ -11,7 +11,6 @@ namespace {
 using netlists::Circuit;
 using netlists::Load;
 using netlists::LoadState;
-using netlists::Name;
 using netlists::Switch;
 using netlists::SwitchKind;
 

@@ -7,7 +7,6 @@
 namespace io {
 namespace {
 
-using netlists::Building;
 using netlists::FedFrom;
 using netlists::Feeder;
 using netlists::Panel;

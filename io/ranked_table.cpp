@@ -186,7 +186,7 @@ constexpr Group k_groups[] = {
 /// The columns that show most: names as wide as fit, readings below the row only where they must be.
 struct Shape {
   TextTable table;
-  bool readings_below;
+  bool readings_below = false;
 };
 
 Shape fitting(const std::vector<const ConductorFindings*>& conductors,

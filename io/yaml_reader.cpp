@@ -193,7 +193,7 @@ std::optional<int> YamlReader::word_number(const YamlNode& node, const std::vect
 }
 
 YamlMap::YamlMap(YamlReader& reader, const YamlNode& node, std::string owner,
-                 std::vector<std::string> allowed, const YamlNode* place)
+                 const std::vector<std::string>& allowed, const YamlNode* place)
     : reader_(reader), node_(node), place_(place != nullptr ? place : &node), owner_(std::move(owner)) {
   if (is_map())
     check_keys(allowed);

@@ -82,8 +82,8 @@ class YamlMap {
  public:
   /// `owner` begins every message: "circuit 'LP2-7'". `place` is where a missing key is reported,
   /// by default the map itself.
-  YamlMap(YamlReader& reader, const YamlNode& node, std::string owner, std::vector<std::string> allowed,
-          const YamlNode* place = nullptr);
+  YamlMap(YamlReader& reader, const YamlNode& node, std::string owner,
+          const std::vector<std::string>& allowed, const YamlNode* place = nullptr);
 
   bool is_map() const { return node_.kind == YamlKind::map; }
   const std::string& owner() const { return owner_; }

@@ -30,7 +30,6 @@ constexpr std::size_t k_most_flow_marks = 8'000'000;
 constexpr long k_most_unclosed = 1000;
 
 using netlists::Fault;
-using netlists::Mark;
 using netlists::Severity;
 
 /// Ends the reading of a file early, with one last fault.

@@ -26,7 +26,7 @@ class Names {
 /// A building under check: its names indexed once, its faults collected.
 class Checks {
  public:
-  explicit Checks(const Building& building);
+  explicit Checks(const Building& checked);
 
   const Building& building;
   std::vector<Fault> faults;

@@ -225,10 +225,10 @@ class Classifier {
   Conditions report() const {
     Conditions result;
     result.warnings = warnings_;
-    for (std::size_t n = 0; n < of_node_.size(); ++n) {
-      const Component& component = components_[of_node_[n]];
-      result.of_node.push_back(condition_[of_node_[n]]);
-      const bool energised = condition_[of_node_[n]] == Condition::energised;
+    for (const int of_node : of_node_) {
+      const Component& component = components_[of_node];
+      result.of_node.push_back(condition_[of_node]);
+      const bool energised = condition_[of_node] == Condition::energised;
       result.floating_supply.push_back(energised ? frame_.at(component.poles[0]->supply) : "");
     }
     for (const ConductorPath& path : lowered_.conductors) {

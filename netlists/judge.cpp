@@ -30,9 +30,9 @@ constexpr double k_net_share = 0.05;       // of the largest current in the run
 /// Supplies, and the bars of panels, as aggressors where no conductor of the model stands for them.
 class Groups {
  public:
-  Groups(const Building& building, const Lowered& lowered) {
+  Groups(const Building& building, const Lowered& lowered)
+      : ground_(static_cast<int>(lowered.conductors.size())) {
     for (const ConductorPath& path : lowered.conductors) names_.push_back(path.id);
-    ground_ = static_cast<int>(names_.size());
     names_.emplace_back("ground");
     for (const Supply& supply : building.supplies) {
       supply_[supply.name.text] = static_cast<int>(names_.size());
@@ -85,7 +85,7 @@ class Judge {
                              conditions_.warnings.end());
     findings.warnings.insert(findings.warnings.end(), warnings_.begin(), warnings_.end());
     warn_of_net_currents(findings.warnings);
-    findings.assumptions.push_back(
+    findings.assumptions.emplace_back(
         "no draws are made: readings are those of the nominal case, ranked by that alone");
     return findings;
   }

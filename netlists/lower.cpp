@@ -44,7 +44,7 @@ class Lowering {
   Lowered lower() {
     join_supplies();
     for (const Panel& panel : building_.panels) join_panel(panel);
-    for (std::size_t w = 0; w < wiring_.wires.size(); ++w) lay_wire(wiring_.wires[w]);
+    for (const PhysicalWire& wire : wiring_.wires) lay_wire(wire);
     for (const Circuit& circuit : building_.circuits) land(circuit);
     for (const Panel& panel : building_.panels) land_feeder(panel);
     lay_raceways();

@@ -28,7 +28,7 @@ constexpr double k_inch = 25.4e-3;    // m
 constexpr double k_kilofoot = 304.8;  // m
 constexpr ImpedanceConditions k_60_hz{};
 
-RoundConductor wire(Vector2d centre, double radius, int strands = 1) {
+RoundConductor wire(const Vector2d& centre, double radius, int strands = 1) {
   RoundConductor c;
   c.centre = centre;
   c.radius = radius;
@@ -36,7 +36,7 @@ RoundConductor wire(Vector2d centre, double radius, int strands = 1) {
   return c;
 }
 
-Shell shell(Vector2d centre, double inner_radius, double outer_radius, Metal metal = {}) {
+Shell shell(const Vector2d& centre, double inner_radius, double outer_radius, Metal metal = {}) {
   Shell s;
   s.centre = centre;
   s.inner_radius = inner_radius;
@@ -329,7 +329,7 @@ TEST(SeriesImpedance, TakesAShellsStatedResistance) {
 }
 
 /// A heap of wires of mixed size at rest in a tube of the given radius about `centre`.
-void add_heap(CrossSection& section, Vector2d centre, double tube_radius, int wires,
+void add_heap(CrossSection& section, const Vector2d& centre, double tube_radius, int wires,
               std::mt19937_64& random) {
   std::vector<double> radii;
   for (int i = 0; i < wires; ++i) radii.push_back(tube_radius * (i % 2 ? 0.12 : 0.18));

@@ -12,7 +12,6 @@ namespace {
 
 using ::testing::Contains;
 using ::testing::HasSubstr;
-using ::testing::Not;
 
 // One panel, one box, one room; what a test adds comes after.
 std::string branch(const std::string& more) {

@@ -7,7 +7,6 @@ namespace netlists {
 namespace {
 
 using ::testing::HasSubstr;
-using ::testing::Not;
 
 // 3 kohm at 120 V: 120 * 3 / (3 + 240) = 1.48 V by Ohm's law.
 TEST(WeakestSource, IsOhmsLaw) { EXPECT_NEAR(weakest_source_reading(120, 3e3, 0.5e-3), 1.4815, 1e-4); }

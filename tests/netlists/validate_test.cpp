@@ -37,8 +37,9 @@ class Checked : public testing::Test {
     b_.runs.push_back(it);
   }
 
-  Circuit& circuit(const std::string& name, std::vector<int> slots, const std::vector<std::string>& wires,
-                   const std::vector<std::string>& runs, const std::string& type = "THHN 12") {
+  Circuit& circuit(const std::string& name, const std::vector<int>& slots,
+                   const std::vector<std::string>& wires, const std::vector<std::string>& runs,
+                   const std::string& type = "THHN 12") {
     Circuit it;
     it.name.text = name;
     if (!slots.empty()) it.panel = Name{"P", {}};
