@@ -344,14 +344,16 @@ MatrixXd inverse(const MatrixXd& positive_definite) {
 
 }  // namespace
 
-FieldMatrices field_matrices(const CrossSection& section) {
+FieldMatrices field_matrices(const CrossSection& section, Inductance inductance) {
   require_valid(section);
-  const Solved solved = solve(section), without = solve(bare(section));
+  const Solved solved = solve(section);
   FieldMatrices matrices;
   matrices.capacitance = in_maxwell_form(solved.capacitance.real());
   const MatrixXd loss = -solved.capacitance.imag();
   matrices.loss_capacitance = (loss + loss.transpose()) / 2;
-  matrices.external_inductance = k_mu_0 * k_epsilon_0 * inverse(without.capacitance.real());
+  if (inductance == Inductance::with) {
+    matrices.external_inductance = k_mu_0 * k_epsilon_0 * inverse(solve(bare(section)).capacitance.real());
+  }
   matrices.order = solved.order;
   matrices.estimated_relative_error = solved.error;
   return matrices;

@@ -19,6 +19,9 @@ using netlists::Reading;
 
 constexpr int k_indent = 6;  // columns, of the lines below a row
 
+/// Volts in the table: what no instrument shows is not spelt out.
+std::string small(double volts) { return volts < 0.01 ? "<0.01 V" : volts_text(volts); }
+
 /// What `instrument` reads at the row's place against its reference: "61 V", "12 to 33 V" where more
 /// than one range was used, "-" where nothing.
 std::string reading_text(const Focus& at, const std::string& instrument) {
@@ -31,8 +34,7 @@ std::string reading_text(const Focus& at, const std::string& instrument) {
     any = true;
   }
   if (!any) return "-";
-  const auto text = [](double volts) { return volts < 0.01 ? std::string("<0.01 V") : volts_text(volts); };
-  return text(least) == text(most) ? text(most) : text(least) + " to " + text(most);
+  return small(least) == small(most) ? small(most) : small(least) + " to " + small(most);
 }
 
 /// The mark of a row: its rank, or "-".
@@ -73,7 +75,7 @@ std::string aggressor_text(const PlaceFindings& place) {
   const netlists::ContributionEntry* entry = main_aggressor(place);
   if (entry == nullptr) return "";
   return fmt::format(" Mainly from {} ({}, {} of {}).", printable(entry->from), entry->path,
-                     volts_text(std::abs(entry->volts)), volts_text(std::abs(place.open_circuit)));
+                     small(std::abs(entry->volts)), small(std::abs(place.open_circuit)));
 }
 
 /// "dmm 61 V, low_impedance 0.35 V": what each instrument reads at the place against the reference.
@@ -100,7 +102,7 @@ std::string settle_text(const ConductorFindings& conductor, const Focus& at,
                ? " Treat as live; no reading here settles it: see explain."
                : " None of these instruments settles it: see explain.";
   return fmt::format(" Settled by {}: expect {}, treat as live above {}.", *conductor.settle.instrument,
-                     volts_text(conductor.settle.expect), limit_text(conductor.settle.treat_as_live_above));
+                     small(conductor.settle.expect), limit_text(conductor.settle.treat_as_live_above));
 }
 
 std::string indicators_text(const Focus& at) {
@@ -176,7 +178,7 @@ struct Group {
   const char* colour;  // of an ANSI terminal; the words say the same
 };
 
-// No colour stands for what is not flagged: that would read as an all-clear.
+// No colour stands for what is not flagged: any would read as a promise.
 constexpr Group k_groups[] = {
     {Misleads::false_dead, "FALSE_DEAD: fed, and yet an instrument reads next to nothing", "1;31"},
     {Misleads::false_live, "FALSE_LIVE: nothing feeds it as drawn, and yet an instrument reads as if live",

@@ -17,6 +17,8 @@ std::string rounded(double value, int digits) {
   return fmt::format("{:.{}f}", value, std::max(0, digits - before));
 }
 
+constexpr char k_stand_in = '\x01';  // in no text that has been made printable
+
 struct Unit {
   double size;
   const char* name;
@@ -147,11 +149,17 @@ std::vector<std::string> wrap(const std::string& text, int width) {
 }
 
 std::string paragraph(const std::string& first, const std::string& text, int width, int indent) {
-  const int lead = std::max(columns_of(first), indent);
-  std::string out, start = padded(first, lead, false);
-  for (const std::string& line : wrap(text, std::max(10, width - lead))) {
+  const int lead = columns_of(first);
+  const int room = std::max(10, width - std::max(0, indent));
+  // The first line has less room by what its lead takes beyond the indent: blanks that cannot break
+  // stand for it while the words are laid out.
+  const int more = std::max(0, lead - indent);
+  const std::string stand_in(static_cast<std::size_t>(more), k_stand_in);
+  std::string out, start = first;
+  for (std::string line : wrap(stand_in + text, room)) {
+    if (out.empty()) line.erase(0, static_cast<std::size_t>(more));
     out += without_trailing_blanks(start + line) + "\n";
-    start = std::string(static_cast<std::size_t>(lead), ' ');
+    start = std::string(static_cast<std::size_t>(indent), ' ');
   }
   return out;
 }

@@ -32,7 +32,7 @@ std::vector<std::string> wrap(const std::string& text, int width);
 /// Wrapped lines, each ended by a newline, the first after `first`, the others indented as far as it.
 std::string paragraph(const std::string& first, const std::string& text, int width);
 
-/// The same, the other lines after `indent` blanks.
+/// The same, the other lines after `indent` blanks, at most as many as `first` has columns.
 std::string paragraph(const std::string& first, const std::string& text, int width, int indent);
 
 /// A column of a table: its header, how wide it may grow, on which side its cells stand.

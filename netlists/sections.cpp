@@ -22,9 +22,10 @@ namespace {
 constexpr double k_default_clearance = 50e-3;  // m
 // Bare metal lies on bare metal only over its oxide and dirt; the gap keeps the two apart as
 // conductors of the network, which joins them where they are bonded.
-constexpr double k_bare_gap = 50e-6;    // m
-constexpr double k_row_gap = 1e-6;      // m, between neighbours that touch
-constexpr double k_joint_slack = 1e-6;  // m, keeps a core that touches its jacket inside it
+constexpr double k_bare_gap = 50e-6;        // m
+constexpr double k_field_tolerance = 1e-3;  // layouts scatter by tens of percent; a tenth of one is ample
+constexpr double k_row_gap = 1e-6;          // m, between neighbours that touch
+constexpr double k_joint_slack = 1e-6;      // m, keeps a core that touches its jacket inside it
 constexpr int k_most_layouts = 16;
 
 /// A thing that lies in a raceway as one: a loose wire or a factory cable.
@@ -104,6 +105,7 @@ class Assembly {
  public:
   Assembly(const Building& building, const Wiring& wiring) : building_(building), wiring_(wiring) {
     section_.surroundings = engine::Surroundings::plane;
+    section_.tolerance = k_field_tolerance;
   }
 
   void add_item(const Item& item, const Eigen::Vector2d& centre, double turn, int run) {
@@ -392,7 +394,7 @@ struct SectionLibrary::Impl {
     for (int number = 0; number < draws; ++number) {
       std::vector<StretchRow> rows;
       const engine::CrossSection section = draw(stretch, number, rows);
-      const engine::FieldMatrices field = engine::field_matrices(section);
+      const engine::FieldMatrices field = engine::field_matrices(section, engine::Inductance::without);
       ++solved;
       engine::LineMatrices one{engine::series_impedance(section, conditions), field.capacitance,
                                omega * field.loss_capacitance};

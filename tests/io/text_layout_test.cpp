@@ -67,6 +67,13 @@ TEST(Wrap, CountsLettersAndNotBytes) {
     EXPECT_EQ(line.size() % 2, 0u) << "a letter was torn apart";
 }
 
+TEST(Paragraph, HangsItsOtherLinesWhereAsked) {
+  EXPECT_EQ(paragraph("  title: ", "one two three four five", 20, 4),
+            "  title: one two\n    three four five\n");
+  EXPECT_EQ(paragraph("title: ", "one two three", 15), "title: one two\n       three\n");
+  EXPECT_EQ(paragraph("", "", 20), "\n");
+}
+
 // A name from a model file must not steer the reader's terminal.
 TEST(Printable, HoldsNoControlCharacter) {
   EXPECT_EQ(printable("a\x1b[2Jb\x7f\n"), "a?[2Jb??");
