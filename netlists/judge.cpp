@@ -4,14 +4,15 @@
 
 #include <algorithm>
 #include <cmath>
-#include <limits>
 #include <map>
-#include <memory>
 #include <set>
 
-#include "engine/attribution.h"
+#include "netlists/causes.h"
 #include "netlists/condition.h"
+#include "netlists/places.h"
 #include "netlists/plan.h"
+#include "netlists/probes.h"
+#include "netlists/ranking.h"
 #include "netlists/reading.h"
 #include "netlists/settle.h"
 
@@ -20,38 +21,30 @@ namespace {
 
 using engine::Complex;
 
-constexpr double k_live_like_most = 50.0;  // V
-constexpr double k_live_like_share = 0.4;  // of the lowest line voltage at the place
-constexpr double k_dead_like = 3.0;        // V
-constexpr double k_smallest_share = 1e-3;  // of the largest contribution; less goes into "others"
-constexpr double k_net_current = 10e-3;    // A, from here on a run's net current is worth a warning
-constexpr double k_net_share = 0.05;       // of the largest current in the run
+constexpr double k_net_current = 10e-3;  // A, from here on a run's net current is worth a warning
+constexpr double k_net_share = 0.05;     // of the largest current in the run
 
-/// Supplies, and the bars of panels, as aggressors where no conductor of the model stands for them.
-class Groups {
- public:
-  Groups(const Building& building, const Lowered& lowered)
-      : ground_(static_cast<int>(lowered.conductors.size())) {
-    for (const ConductorPath& path : lowered.conductors) names_.push_back(path.id);
-    names_.emplace_back("ground");
-    for (const Supply& supply : building.supplies) {
-      supply_[supply.name.text] = static_cast<int>(names_.size());
-      names_.push_back("supply:" + supply.name.text);
-    }
-  }
+std::vector<bool> determined_nodes(const engine::SolvedNetwork& solved) {
+  std::vector<bool> determined(static_cast<std::size_t>(solved.network().node_count), true);
+  for (const int node : solved.undetermined()) determined[node] = false;
+  return determined;
+}
 
-  const std::string& name(int group) const { return names_[group]; }
-  int ground() const { return ground_; }
-  int supply(const std::string& name) const {
-    const auto found = supply_.find(name);
-    return found == supply_.end() ? ground_ : found->second;
-  }
+std::vector<double> magnitudes(const engine::SolvedNetwork& solved) {
+  std::vector<double> volts;
+  for (int node = 0; node < solved.network().node_count; ++node)
+    volts.push_back(std::abs(solved.volts(node)));
+  return volts;
+}
 
- private:
-  std::vector<std::string> names_;
-  std::map<std::string, int> supply_;
-  int ground_ = 0;
-};
+void append(std::vector<Probe>& all, const std::vector<Probe>& more) {
+  all.insert(all.end(), more.begin(), more.end());
+}
+
+bool stiff(const ConductorFindings& found) {
+  return found.condition == Condition::grounded ||
+         (found.condition == Condition::energised && !found.isolated_supply);
+}
 
 class Judge {
  public:
@@ -59,15 +52,12 @@ class Judge {
       : building_(building),
         lowered_(lowered),
         solved_(solved),
+        determined_(determined_nodes(solved)),
+        volts_(magnitudes(solved)),
         conditions_(conditions(lowered)),
-        groups_(building, lowered),
-        undetermined_(solved.undetermined().begin(), solved.undetermined().end()) {
-    for (const ConductorPath& path : lowered.conductors) by_wire_[path.wire].push_back(&path);
-    for (std::size_t i = 0; i < lowered.conductors.size(); ++i) {
-      for (const Access& access : lowered.conductors[i].access)
-        at_place_[access.place].push_back({static_cast<int>(i), access.node});
-    }
-  }
+        places_(building, lowered, conditions_),
+        probes_(lowered, conditions_, places_, determined_),
+        causes_(building, lowered, conditions_, solved) {}
 
   Findings judge() {
     Findings findings;
@@ -76,26 +66,22 @@ class Judge {
     findings.frequency = building_.frequency;
     findings.states = lowered_.states;
     findings.assumptions = lowered_.assumptions;
-    findings.warnings = lowered_.warnings;
     findings.residual = solved_.residual();
     findings.instruments = building_.instruments;
     for (std::size_t i = 0; i < lowered_.conductors.size(); ++i) findings.conductors.push_back(conductor(i));
+    take_readings(findings.conductors);
+    for (std::size_t i = 0; i < findings.conductors.size(); ++i) {
+      set_misleads(findings.conductors[i]);
+      findings.conductors[i].settle = settle(i, findings.conductors[i]);
+    }
+    findings.warnings = warnings(findings.conductors);
     rank(findings.conductors);
-    findings.warnings.insert(findings.warnings.end(), conditions_.warnings.begin(),
-                             conditions_.warnings.end());
-    findings.warnings.insert(findings.warnings.end(), warnings_.begin(), warnings_.end());
-    warn_of_net_currents(findings.warnings);
     findings.assumptions.emplace_back(
         "no draws are made: readings are those of the nominal case, ranked by that alone");
     return findings;
   }
 
  private:
-  struct AtPlace {
-    int conductor = 0;
-    int node = 0;
-  };
-
   // ---- one conductor -----------------------------------------------------------------------------
 
   ConductorFindings conductor(std::size_t index) {
@@ -105,253 +91,80 @@ class Judge {
     found.condition = conditions_.of_conductor[index];
     found.not_predicted = path.near_drive;
     found.supply = conditions_.supply[index];
+    const std::vector<std::string>& floating = lowered_.floating_supplies;
     found.isolated_supply = found.condition == Condition::energised &&
-                            std::find(lowered_.floating_supplies.begin(), lowered_.floating_supplies.end(),
-                                      found.supply) != lowered_.floating_supplies.end();
+                            std::find(floating.begin(), floating.end(), found.supply) != floating.end();
     for (const Access& access : path.access) {
-      if (undetermined_.count(access.node)) {
-        warnings_.push_back(
-            fmt::format("{} at {}: nothing in the model ties it to anything; no reading is predicted",
-                        path.id, access.place));
-        continue;
-      }
-      found.places.push_back(place(index, access, found));
+      if (determined_[access.node]) found.places.push_back(place(index, access, found));
     }
-    mislead(found);
-    found.settle = settle(index, found);
     return found;
   }
 
-  bool stiff(const ConductorFindings& found) const {
-    return found.condition == Condition::grounded ||
-           (found.condition == Condition::energised && !found.isolated_supply);
-  }
-
+  // Causes, and what will be probed; the readings follow once all probes are known.
   PlaceFindings place(std::size_t index, const Access& access, const ConductorFindings& owner) {
-    const ConductorPath& path = lowered_.conductors[index];
     PlaceFindings found;
     found.place = access.place;
-    const auto ground = lowered_.at.find("ground@" + access.place);
-    const int reference = ground == lowered_.at.end() ? 0 : ground->second;
-    found.reference = ground == lowered_.at.end() ? "earth" : "ground";
-    if (found.reference == "earth") {
-      earth_places_.insert(access.place);
-    }
-    const Port port = port_between(access.node, reference);
-    found.open_circuit = port.volts;
-    found.source_impedance = port.impedance;
-    found.short_circuit = port.impedance == 0.0 ? 0.0 : std::abs(port.volts / port.impedance);
-    add_readings(found, port, found.reference, true);
-    const auto [neutral, neutral_id] = neutral_at(path, access);
-    if (neutral >= 0) add_readings(found, port_between(access.node, neutral), neutral_id, true);
+    const Probe to_ground = probes_.to_ground(access);
+    found.reference = to_ground.reference;
+    std::vector<Probe> probes{to_ground};
+    append(probes, probes_.to_neutral(index, access));
     if (!stiff(owner)) {
-      found.contributions = contributions(access.node, reference, owner);
-      add_partners(found, path, access, neutral);
-      add_neighbour(found, index, access);
+      found.contributions = causes_.contributions(access.node, to_ground.reference_node,
+                                                  owner.isolated_supply ? owner.supply : "");
+      append(probes, probes_.to_partners(index, access));
+      append(probes, probes_.to_neighbour(index, access, found.contributions, volts_));
     }
+    probed_.push_back(std::move(probes));
     return found;
   }
 
-  Port port_between(int a, int b) {
-    if (a == b) return {0.0, 0.0};
-    const auto [entry, fresh] = ports_.try_emplace({a, b});
-    if (fresh) entry->second = {solved_.volts(a, b), solved_.source_impedance(a, b)};
-    return entry->second;
-  }
+  // ---- readings ----------------------------------------------------------------------------------
 
-  // The own neutral's node at a place and the id of the piece that is reached there: a cut neutral goes
-  // by another name beyond its cut. Node -1 where there is none.
-  std::pair<int, std::string> neutral_at(const ConductorPath& path, const Access& access) const {
-    const auto pieces = by_wire_.find(path.neutral);
-    if (path.neutral.empty() || pieces == by_wire_.end()) return {-1, ""};
-    for (const ConductorPath* piece : pieces->second) {
-      for (const Access& reached : piece->access) {
-        if (reached.place != access.place || undetermined_.count(reached.node)) continue;
-        return {reached.node == access.node ? -1 : reached.node, piece->id};
+  void take_readings(std::vector<ConductorFindings>& all) {
+    const std::map<std::pair<int, int>, Port> ports = solve_ports();
+    std::size_t next = 0;
+    for (ConductorFindings& found : all) {
+      for (PlaceFindings& at : found.places) {
+        const std::vector<Probe>& probes = probed_[next++];
+        const Port& port = ports.at({probes.front().node, probes.front().reference_node});
+        at.open_circuit = port.volts;
+        at.source_impedance = port.impedance;
+        at.short_circuit = port.impedance == 0.0 ? 0.0 : std::abs(port.volts / port.impedance);
+        for (const Probe& probe : probes)
+          add_readings(at, probe, ports.at({probe.node, probe.reference_node}));
       }
     }
-    return {-1, ""};
   }
 
-  void add_readings(PlaceFindings& found, const Port& port, const std::string& reference, bool judged) {
+  // Every pair of points that is probed, solved together.
+  std::map<std::pair<int, int>, Port> solve_ports() const {
+    std::map<std::pair<int, int>, Port> ports;
+    std::vector<std::pair<int, int>> apart;
+    for (const std::vector<Probe>& probes : probed_) {
+      for (const Probe& probe : probes) {
+        const std::pair<int, int> pair{probe.node, probe.reference_node};
+        if (ports.try_emplace(pair).second && pair.first != pair.second) apart.push_back(pair);
+      }
+    }
+    const std::vector<Complex> impedances = solved_.source_impedances(apart);
+    for (std::size_t i = 0; i < apart.size(); ++i)
+      ports[apart[i]] = {solved_.volts(apart[i].first, apart[i].second), impedances[i]};
+    return ports;
+  }
+
+  void add_readings(PlaceFindings& found, const Probe& probe, const Port& port) const {
     for (const InstrumentType& instrument : building_.instruments) {
       Reading reading = read(instrument, port, building_.frequency);
-      reading.reference = reference;
-      reading.appearance = appearance(reading.volts, found.place);
-      reading.judged = judged && !reading.indicator;
+      reading.reference = probe.reference;
+      reading.appearance = places_.appearance(reading.volts, found.place);
+      reading.judged = probe.judged && !reading.indicator;
       found.readings.push_back(std::move(reading));
     }
   }
 
-  // The other wires of its circuit, shown and not judged.
-  void add_partners(PlaceFindings& found, const ConductorPath& path, const Access& access, int neutral) {
-    if (path.circuit.empty()) return;
-    for (const AtPlace& other : at_place_.at(access.place)) {
-      const ConductorPath& partner = lowered_.conductors[other.conductor];
-      if (partner.circuit != path.circuit || other.node == access.node || other.node == neutral ||
-          partner.ground)
-        continue;
-      if (undetermined_.count(other.node)) continue;
-      add_readings(found, port_between(access.node, other.node), partner.id, false);
-    }
-  }
-
-  // The live conductor of another circuit there that puts most on it, else the one of most voltage.
-  void add_neighbour(PlaceFindings& found, std::size_t index, const Access& access) {
-    std::map<std::string, double> share;
-    for (const ContributionEntry& entry : found.contributions) share[entry.from] += std::abs(entry.volts);
-    const AtPlace* best = nullptr;
-    std::pair<double, double> best_weight{-1.0, -1.0};
-    for (const AtPlace& other : at_place_.at(access.place)) {
-      const ConductorPath& neighbour = lowered_.conductors[other.conductor];
-      if (other.node == access.node || neighbour.ground) continue;
-      if (conditions_.of_conductor[other.conductor] != Condition::energised) continue;
-      if (!neighbour.circuit.empty() && neighbour.circuit == lowered_.conductors[index].circuit) continue;
-      const std::pair<double, double> weight{share.count(neighbour.id) ? share[neighbour.id] : 0.0,
-                                             std::abs(solved_.volts(other.node))};
-      if (weight > best_weight) {
-        best_weight = weight;
-        best = &other;
-      }
-    }
-    if (best)
-      add_readings(found, port_between(access.node, best->node), lowered_.conductors[best->conductor].id,
-                   false);
-  }
-
-  // ---- appearance --------------------------------------------------------------------------------
-
-  std::set<std::string> supplies_at(const std::string& place) const {
-    std::set<std::string> names;
-    const auto here = at_place_.find(place);
-    if (here == at_place_.end()) return names;
-    for (const AtPlace& other : here->second) {
-      const std::string& drawn = lowered_.conductors[other.conductor].supply;
-      const std::string& solved = conditions_.supply[other.conductor];
-      if (!drawn.empty()) names.insert(drawn);
-      if (!solved.empty()) names.insert(solved);
-    }
-    return names;
-  }
-
-  double live_like(const std::string& place) {
-    if (building_.limits.live_like) return *building_.limits.live_like;
-    const auto [entry, fresh] = live_like_.try_emplace(place, k_live_like_most);
-    if (!fresh) return entry->second;
-    for (const std::string& name : supplies_at(place)) {
-      const Supply* supply = find_supply(building_, name);
-      const SystemType* system = supply ? system_of(building_, *supply) : nullptr;
-      if (system) entry->second = std::min(entry->second, k_live_like_share * line_voltage(*system));
-    }
-    return entry->second;
-  }
-
-  Appearance appearance(double volts, const std::string& place) {
-    if (volts >= live_like(place)) return Appearance::live_like;
-    return volts < building_.limits.dead_like.value_or(k_dead_like) ? Appearance::dead_like
-                                                                    : Appearance::unclear;
-  }
-
-  void mislead(ConductorFindings& found) const {
-    const bool live = found.condition == Condition::energised || found.condition == Condition::through_load;
-    const Appearance contradicts = live ? Appearance::dead_like : Appearance::live_like;
-    for (const PlaceFindings& place : found.places) {
-      for (const Reading& reading : place.readings) {
-        if (!reading.judged) continue;
-        found.expected_reading = std::max(found.expected_reading, reading.volts);
-        if (reading.appearance == contradicts)
-          found.misleads = live ? Misleads::false_dead : Misleads::false_live;
-      }
-    }
-  }
-
-  // ---- why -----------------------------------------------------------------------------------------
-
-  std::vector<ContributionEntry> contributions(int node, int reference, const ConductorFindings& owner) {
-    const std::string frame = owner.isolated_supply ? owner.supply : "";
-    auto& attribution = attributions_[frame];
-    if (!attribution) attribution = std::make_unique<engine::Attribution>(solved_, aggressors(frame));
-    std::vector<ContributionEntry> entries;
-    double largest = 0.0;
-    const auto parts = attribution->contributions(node, reference);
-    for (const engine::Contribution& part : parts) largest = std::max(largest, std::abs(part.volts));
-    std::map<engine::Path, Complex> others;
-    for (const engine::Contribution& part : parts) {
-      if (std::abs(part.volts) < k_smallest_share * largest) {
-        others[part.path] += part.volts;
-      } else {
-        entries.push_back({groups_.name(part.group), to_word(part.path), part.volts});
-      }
-    }
-    for (const auto& [path, volts] : others) {
-      if (volts != 0.0) entries.push_back({"others", to_word(path), volts});
-    }
-    return entries;
-  }
-
-  static std::string to_word(engine::Path path) {
-    switch (path) {
-      case engine::Path::electric:
-        return "electric";
-      case engine::Path::magnetic:
-        return "magnetic";
-      case engine::Path::conductive:
-        return "conductive";
-    }
-    return "";
-  }
-
-  // Who is an aggressor: all that is energised or grounded, but for a floating supply whose own
-  // conductors are asked about: what sets their potential is asked, so they are victims then.
-  engine::Aggressors aggressors(const std::string& frame) const {
-    const engine::Network& network = lowered_.network;
-    engine::Aggressors result;
-    std::vector<bool> fixed;
-    for (int n = 0; n < network.node_count; ++n) {
-      const Condition condition = conditions_.of_node[n];
-      const bool own = !frame.empty() && conditions_.floating_supply[n] == frame;
-      fixed.push_back((condition == Condition::energised || condition == Condition::grounded) && !own);
-      result.of_node.push_back(fixed.back() ? owner_of(n) : -1);
-    }
-    for (std::size_t l = 0; l < network.lines.size(); ++l) {
-      result.of_segment.emplace_back();
-      for (const int node : network.lines[l].from) result.of_segment[l].push_back(fixed[node] ? 0 : -1);
-    }
-    for (std::size_t c = 0; c < lowered_.conductors.size(); ++c) {
-      for (const auto& [line, row] : lowered_.conductors[c].segments) {
-        int& group = result.of_segment[line][row];
-        if (group >= 0) group = static_cast<int>(c);
-      }
-    }
-    for (const std::string& name : lowered_.source_names) {
-      result.of_source.push_back(groups_.supply(name.substr(0, name.rfind(' '))));
-    }
-    return result;
-  }
-
-  int owner_of(int node) const {
-    if (owner_.empty()) {
-      owner_.assign(static_cast<std::size_t>(lowered_.network.node_count), groups_.ground());
-      for (const LivePole& pole : lowered_.poles) {
-        if (!pole.grounded) owner_[pole.node] = groups_.supply(pole.supply);
-      }
-      std::vector<bool> taken(owner_.size(), false);
-      for (const auto& [name, at] : lowered_.at) {
-        if (name.rfind("ground@", 0) == 0) taken[at] = true;
-      }
-      for (std::size_t c = 0; c < lowered_.conductors.size(); ++c) {
-        for (const Access& access : lowered_.conductors[c].access) {
-          if (!taken[access.node] && owner_[access.node] == groups_.ground())
-            owner_[access.node] = static_cast<int>(c);
-        }
-      }
-    }
-    return owner_[node];
-  }
-
   // ---- what settles it ---------------------------------------------------------------------------
 
-  Settle settle(std::size_t index, const ConductorFindings& found) {
+  Settle settle(std::size_t index, const ConductorFindings& found) const {
     switch (found.condition) {
       case Condition::grounded:
         return settle_grounded();
@@ -360,71 +173,83 @@ class Judge {
       case Condition::energised: {
         if (!found.isolated_supply) return settle_energised(found.supply);
         const Supply* supply = find_supply(building_, found.supply);
-        const SystemType* system = supply ? system_of(building_, *supply) : nullptr;
-        return settle_isolated(found.supply, system ? most_to_ground(building_, *supply) : 0.0);
+        return settle_isolated(found.supply, supply ? most_to_ground(building_, *supply) : 0.0);
       }
       case Condition::grounded_through_load:
       case Condition::floating:
         break;
     }
-    double nominal = 0.0;
-    std::map<std::string, CouplingReading> worst;
-    for (const PlaceFindings& place : found.places) {
-      nominal = std::max(nominal, nominal_at(place.place));
-      for (const Reading& reading : place.readings) {
-        if (reading.reference != place.reference || reading.indicator) continue;
-        for (const InstrumentType& instrument : building_.instruments) {
-          if (instrument.name != reading.instrument) continue;
-          CouplingReading& entry = worst[reading.instrument];
-          entry.instrument = reading.instrument;
-          if (entry.resistance == 0.0 || reading.volts > entry.volts) {
-            entry.volts = reading.volts;
-            entry.resistance = resistance_in_force(instrument, reading);
-          }
+    return settle_coupling(worst_readings(found), weakest_source(found));
+  }
+
+  // What each voltmeter shows at most, over the places, and the resistance it then has.
+  std::vector<CouplingReading> worst_readings(const ConductorFindings& found) const {
+    std::vector<CouplingReading> worst;
+    for (const InstrumentType& instrument : building_.instruments) {
+      CouplingReading most;
+      for (const PlaceFindings& at : found.places) {
+        for (const Reading& reading : at.readings) {
+          if (reading.instrument != instrument.name || reading.reference != at.reference || reading.indicator)
+            continue;
+          if (!most.instrument.empty() && reading.volts <= most.volts) continue;
+          most = {instrument.name, resistance_in_force(instrument, reading), reading.volts};
         }
       }
+      if (!most.instrument.empty()) worst.push_back(most);
     }
-    std::vector<CouplingReading> readings;
-    for (const auto& [name, reading] : worst) readings.push_back(reading);
-    return settle_coupling(readings, nominal, building_.limits.body_current);
+    return worst;
   }
 
-  // The highest nominal voltage to ground of a supply at a place; of any in the model where none is.
-  double nominal_at(const std::string& place) const {
-    double nominal = 0.0;
-    for (const std::string& name : supplies_at(place)) {
-      if (const Supply* supply = find_supply(building_, name))
-        nominal = std::max(nominal, most_to_ground(building_, *supply));
+  RealSource weakest_source(const ConductorFindings& found) const {
+    RealSource source{0.0, 0.0, building_.limits.body_current};
+    for (const PlaceFindings& at : found.places) {
+      const double volts = places_.nominal(at.place).least_to_ground;
+      const double live_like = places_.live_like(at.place);
+      source.volts = source.volts == 0.0 ? volts : std::min(source.volts, volts);
+      source.live_like = source.live_like == 0.0 ? live_like : std::min(source.live_like, live_like);
     }
-    if (nominal > 0) return nominal;
-    for (const Supply& supply : building_.supplies)
-      nominal = std::max(nominal, most_to_ground(building_, supply));
-    return nominal;
+    return source;
   }
 
-  // ---- all of them ---------------------------------------------------------------------------------
+  // ---- warnings ----------------------------------------------------------------------------------
 
-  static void rank(std::vector<ConductorFindings>& all) {
-    const auto order = [](const ConductorFindings& c) {
-      return c.misleads == Misleads::false_dead ? 0 : c.misleads == Misleads::false_live ? 1 : 2;
-    };
-    std::stable_sort(all.begin(), all.end(), [&](const ConductorFindings& a, const ConductorFindings& b) {
-      if (order(a) != order(b)) return order(a) < order(b);
-      return order(a) < 2 && a.expected_reading > b.expected_reading;
-    });
-    int next = 1;
-    for (ConductorFindings& c : all) {
-      if (c.misleads != Misleads::no) c.rank = next++;
+  std::vector<std::string> warnings(const std::vector<ConductorFindings>& all) const {
+    std::vector<std::string> found = lowered_.warnings;
+    found.insert(found.end(), conditions_.warnings.begin(), conditions_.warnings.end());
+    warn_of_untied_conductors(found);
+    warn_of_places_without_ground(all, found);
+    warn_of_net_currents(found);
+    return found;
+  }
+
+  void warn_of_untied_conductors(std::vector<std::string>& warnings) const {
+    for (const ConductorPath& path : lowered_.conductors) {
+      for (const Access& access : path.access) {
+        if (determined_[access.node]) continue;
+        warnings.push_back(
+            fmt::format("{} at {}: nothing in the model ties it to anything; no reading is predicted",
+                        path.id, access.place));
+      }
     }
   }
 
-  void warn_of_net_currents(std::vector<std::string>& warnings) const {
-    for (const std::string& place : earth_places_) {
+  static void warn_of_places_without_ground(const std::vector<ConductorFindings>& all,
+                                            std::vector<std::string>& warnings) {
+    std::set<std::string> places;
+    for (const ConductorFindings& found : all) {
+      for (const PlaceFindings& at : found.places) {
+        if (at.reference == "earth") places.insert(at.place);
+      }
+    }
+    for (const std::string& place : places) {
       warnings.push_back(
           fmt::format("place '{}' has no ground: readings there are to earth, which nobody can take "
                       "without a stake or a long lead",
                       place));
     }
+  }
+
+  void warn_of_net_currents(std::vector<std::string>& warnings) const {
     const engine::Network& network = lowered_.network;
     for (std::size_t l = 0; l < network.lines.size(); ++l) {
       Complex net = 0.0;
@@ -438,8 +263,8 @@ class Judge {
       if (std::abs(net) < k_net_current || std::abs(net) < k_net_share * largest) continue;
       warnings.push_back(
           fmt::format("run '{}' carries a net current of {:.2g} A whose return is not beside it: what it "
-                      "induces in other runs is "
-                      "not in the model and may lie anywhere from nothing to several volts",
+                      "induces in other runs is not in the model and may lie anywhere from nothing to "
+                      "several volts",
                       lowered_.line_runs[l], std::abs(net)));
     }
   }
@@ -447,17 +272,13 @@ class Judge {
   const Building& building_;
   const Lowered& lowered_;
   const engine::SolvedNetwork& solved_;
+  std::vector<bool> determined_;  // by node
+  std::vector<double> volts_;     // from earth, by node
   Conditions conditions_;
-  Groups groups_;
-  std::set<int> undetermined_;
-  std::map<std::string, std::vector<const ConductorPath*>> by_wire_;
-  std::map<std::string, std::vector<AtPlace>> at_place_;
-  std::map<std::pair<int, int>, Port> ports_;
-  std::map<std::string, double> live_like_;
-  std::map<std::string, std::unique_ptr<engine::Attribution>> attributions_;
-  mutable std::vector<int> owner_;
-  std::set<std::string> earth_places_;
-  std::vector<std::string> warnings_;
+  Places places_;
+  Probes probes_;
+  Causes causes_;
+  std::vector<std::vector<Probe>> probed_;  // of every place of every conductor, in order
 };
 
 }  // namespace

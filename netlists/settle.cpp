@@ -2,6 +2,8 @@
 
 #include <fmt/format.h>
 
+#include <algorithm>
+
 namespace netlists {
 namespace {
 
@@ -10,10 +12,15 @@ constexpr double k_stand_in_for_p95 = 2.0;
 // What people can do where no instrument separates the two; none of it touches or shorts the conductor.
 const char* const k_otherwise =
     "use a two-impedance voltage detector to every other conductor in the box; open and lock off the "
-    "neighbours one at "
-    "a time and see which one takes the reading with it; or load it through a resistor rated for the highest "
-    "system "
-    "voltage present, at least 10 kohm, with the detector left connected";
+    "neighbours one at a time and see which one takes the reading with it; or load it through a resistor "
+    "rated for the highest system voltage present, at least 10 kohm, with the detector left connected";
+
+double resistance_of(const std::vector<CouplingReading>& readings, const std::string& instrument) {
+  const auto found = std::find_if(readings.begin(), readings.end(), [&](const CouplingReading& reading) {
+    return reading.instrument == instrument;
+  });
+  return found->resistance;
+}
 
 }  // namespace
 
@@ -21,27 +28,31 @@ double weakest_source_reading(double nominal, double resistance, double body_cur
   return nominal * resistance / (resistance + nominal / body_current);
 }
 
-Settle settle_coupling(const std::vector<CouplingReading>& readings, double nominal, double body_current) {
+Settle settle_coupling(const std::vector<CouplingReading>& readings, const RealSource& source) {
   Settle settle;
   double best = 1.0 / k_stand_in_for_p95;  // of the limit; a reading above this share separates nothing
   for (const CouplingReading& reading : readings) {
-    const double limit = weakest_source_reading(nominal, reading.resistance, body_current);
+    if (reading.resistance > source.volts / source.body_current) continue;
+    const double limit = std::min(
+        weakest_source_reading(source.volts, reading.resistance, source.body_current), source.live_like);
     if (limit <= 0 || reading.volts / limit > best) continue;
     best = reading.volts / limit;
     settle.instrument = reading.instrument;
     settle.expect = reading.volts;
     settle.treat_as_live_above = limit;
   }
-  if (settle.instrument) {
-    settle.why = fmt::format(
-        "coupling alone leaves {:.2g} V on '{}', the weakest source a person feels ({:.0f} V behind {:.0f} "
-        "kohm) shows "
-        "{:.3g} V: treat as live above that; a reading below it never proves the conductor dead",
-        settle.expect, *settle.instrument, nominal, nominal / body_current / 1e3, settle.treat_as_live_above);
-  } else {
+  if (!settle.instrument) {
     settle.why = std::string("no instrument of this model tells coupling from a weak real source here: ") +
                  k_otherwise;
+    return settle;
   }
+  settle.why = fmt::format(
+      "coupling alone leaves {:.2g} V on '{}', the weakest source a person feels ({:.0f} V behind {:.0f} "
+      "kohm) "
+      "shows {:.3g} V: treat as live above {:.3g} V; a reading below it never proves the conductor dead",
+      settle.expect, *settle.instrument, source.volts, source.volts / source.body_current / 1e3,
+      weakest_source_reading(source.volts, resistance_of(readings, *settle.instrument), source.body_current),
+      settle.treat_as_live_above);
   return settle;
 }
 

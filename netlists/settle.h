@@ -16,14 +16,22 @@ struct CouplingReading {
   double volts = 0.0;       // V, the nominal reading
 };
 
+/// What coupling must be told apart from.
+struct RealSource {
+  double volts = 0.0;         // V to ground, the lowest of the supplies there: its source shows least
+  double live_like = 0.0;     // V, what looks live there
+  double body_current = 0.0;  // A, what a person feels
+};
+
 /// T = U R / (R + U / i): what an instrument of resistance R (ohm) shows of the weakest source that a
 /// person feels, U (V) behind U / i, i the body current limit (A).
 double weakest_source_reading(double nominal, double resistance, double body_current);
 
-/// Picks the instrument whose coupling reading lies furthest below its T. Until draws give a 95th
-/// percentile, twice the nominal reading stands for it. `nominal` in V, the highest to ground at the
-/// place; `body_current` in A.
-Settle settle_coupling(const std::vector<CouplingReading>& readings, double nominal, double body_current);
+/// Picks the instrument whose coupling reading lies furthest below its limit: T, but never above what
+/// looks live. Only an instrument that loads settles, one of no more than U / i: on any other the weakest
+/// real source keeps most of its volts, and a limit near full voltage would call a sagging supply coupling.
+/// Until draws give a 95th percentile, twice the nominal reading stands for it.
+Settle settle_coupling(const std::vector<CouplingReading>& readings, const RealSource& source);
 
 /// For conductors that are not coupled only: no instrument settles them by a low reading.
 Settle settle_through_load(const std::string& load);

@@ -23,6 +23,18 @@ inline netlists::InstrumentType voltmeter(const std::string& name, double resist
   return out;
 }
 
+/// A place where a conductor is reached, its volts and ohm to ground; no readings yet.
+inline netlists::PlaceFindings reached(const std::string& name, std::complex<double> volts,
+                                       std::complex<double> ohms, double amps) {
+  netlists::PlaceFindings place;
+  place.place = name;
+  place.reference = "ground";
+  place.open_circuit = volts;
+  place.source_impedance = ohms;
+  place.short_circuit = amps;
+  return place;
+}
+
 /// A leg of an isolated supply that a low-impedance instrument reads as dead.
 inline netlists::ConductorFindings isolated_leg() {
   using netlists::Appearance;
@@ -35,7 +47,7 @@ inline netlists::ConductorFindings isolated_leg() {
   leg.isolated_supply = true;
   leg.supply = "IT1";
   leg.settle.why = "No reading to ground tells an isolated leg from a dead conductor";
-  netlists::PlaceFindings place{"Room 4", "ground", {59.0, 3.0}, {10.0, -430e3}, 1.37e-4, {}, {}};
+  netlists::PlaceFindings place = reached("Room 4", {59.0, 3.0}, {10.0, -430e3}, 1.37e-4);
   place.readings = {reading("dmm", "ground", 58.0, Appearance::live_like, true),
                     reading("low_impedance", "ground", 0.41, Appearance::dead_like, true),
                     reading("dmm", "ISO-1.second", 120.0, Appearance::live_like, false),
@@ -54,7 +66,7 @@ inline netlists::ConductorFindings coupled_spare() {
   spare.misleads = netlists::Misleads::false_live;
   spare.expected_reading = 61.2;
   spare.settle = {"low_impedance", 0.35, 1.4829, "Coupling alone stays below the limit"};
-  netlists::PlaceFindings far{"Room 210", "ground", {64.0, -2.5}, {9.0e3, -530e3}, 1.2084e-4, {}, {}};
+  netlists::PlaceFindings far = reached("Room 210", {64.0, -2.5}, {9.0e3, -530e3}, 1.2084e-4);
   far.readings = {reading("dmm", "ground", 61.2, Appearance::live_like, true),
                   reading("low_impedance", "ground", 0.35, Appearance::dead_like, true),
                   reading("dmm", "LP2-7.hot", 58.9, Appearance::live_like, false)};
@@ -77,7 +89,7 @@ inline netlists::ConductorFindings fed(const std::string& id, netlists::Conditio
   out.id = id;
   out.condition = condition;
   out.supply = supply;
-  out.places = {{"LP2", "ground", {120.0, 0.0}, {0.2, 0.1}, 537.0, {}, {}}};
+  out.places = {reached("LP2", {120.0, 0.0}, {0.2, 0.1}, 537.0)};
   return out;
 }
 

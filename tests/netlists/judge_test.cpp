@@ -40,6 +40,17 @@ TEST(Judge, OpenNeutralBehindALoadIsThroughLoad) {
   EXPECT_THAT(neutral.settle.why, HasSubstr("treat as live"));
 }
 
+// The ground wire beside an open neutral reads 120 V to it: that speaks of the neutral.
+TEST(Judge, AGroundWireIsNotBlamedForAFedNeutral) {
+  const Findings findings = Solved(open_neutral("power: 900 W")).findings();
+  const ConductorFindings& ground = conductor(findings, "L1.ground");
+  EXPECT_EQ(ground.condition, Condition::grounded);
+  EXPECT_NEAR(reading(ground, "Room", "dmm", "L1.neutral"), 120, 1.2);
+  EXPECT_EQ(ground.misleads, Misleads::no);
+  // Its hot reads nothing to the same neutral, and that can mislead.
+  EXPECT_EQ(conductor(findings, "L1.hot").misleads, Misleads::false_dead);
+}
+
 // A reading once named the whole wire as its reference beyond a cut, where only a piece of it is reached.
 TEST(Judge, ReferencesNamePiecesThatAreReachedThere) {
   const Solved model(

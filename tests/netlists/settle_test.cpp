@@ -12,7 +12,7 @@ using ::testing::HasSubstr;
 TEST(WeakestSource, IsOhmsLaw) { EXPECT_NEAR(weakest_source_reading(120, 3e3, 0.5e-3), 1.4815, 1e-4); }
 
 TEST(SettleCoupling, PicksTheInstrumentThatSeparatesBest) {
-  const Settle settle = settle_coupling({{"dmm", 10e6, 41}, {"low_impedance", 3e3, 0.18}}, 120, 0.5e-3);
+  const Settle settle = settle_coupling({{"dmm", 10e6, 41}, {"low_impedance", 3e3, 0.18}}, {120, 48, 0.5e-3});
   ASSERT_TRUE(settle.instrument);
   EXPECT_EQ(*settle.instrument, "low_impedance");
   EXPECT_NEAR(settle.treat_as_live_above, 1.4815, 1e-4);
@@ -20,10 +20,25 @@ TEST(SettleCoupling, PicksTheInstrumentThatSeparatesBest) {
   EXPECT_THAT(settle.why, HasSubstr("never proves"));
 }
 
-// A long run on a weak low-impedance mode: the reading is above half of what the weak source shows.
+// "Treat as live above 117 V" was once the advice for a 10 Mohm meter: a supply that sags by 10 % reads less.
+TEST(SettleCoupling, TakesNoInstrumentThatLoadsNothing) {
+  const Settle settle = settle_coupling({{"dmm", 10e6, 2}, {"analog_5k", 1.25e6, 1}}, {120, 48, 0.5e-3});
+  EXPECT_FALSE(settle.instrument);
+  EXPECT_DOUBLE_EQ(settle.treat_as_live_above, 0.0);
+}
+
+// 200 kohm shows 120 * 200 / (200 + 240) = 54.5 V of the weakest source; from 48 V on it looks live.
+TEST(SettleCoupling, NeverAllowsWhatLooksLive) {
+  const Settle settle = settle_coupling({{"meter", 200e3, 2}}, {120, 48, 0.5e-3});
+  ASSERT_TRUE(settle.instrument);
+  EXPECT_DOUBLE_EQ(settle.treat_as_live_above, 48);
+  EXPECT_THAT(settle.why, HasSubstr("54.5 V"));
+}
+
+// A long run: the reading is above half of what the weak source shows.
 TEST(SettleCoupling, NamesNoInstrumentWhereNoneSeparates) {
   const Settle settle =
-      settle_coupling({{"low_impedance_weak", 300e3, 45}, {"low_impedance", 3e3, 0.9}}, 120, 0.5e-3);
+      settle_coupling({{"low_impedance_weak", 200e3, 45}, {"low_impedance", 3e3, 0.9}}, {120, 48, 0.5e-3});
   EXPECT_FALSE(settle.instrument);
   EXPECT_THAT(settle.why, HasSubstr("10 kohm"));
   EXPECT_THAT(settle.why, HasSubstr("one at a time"));
