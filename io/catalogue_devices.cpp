@@ -12,6 +12,7 @@ namespace {
 using netlists::InstrumentKind;
 using netlists::InstrumentRange;
 using netlists::InstrumentType;
+using netlists::LoadEffect;
 using netlists::LoadKind;
 using netlists::Pole;
 using netlists::SystemType;
@@ -22,6 +23,8 @@ constexpr Range k_angle{-6.3, 6.3, "-360 deg to 360 deg"};
 constexpr Range k_source_ohms{0.0, 1e6, "0 ohm to 1 Mohm"};
 constexpr Range k_input_ohms{1e-3, 1e15, "1 mohm to 1e6 Gohm"};
 constexpr Range k_farads{0.0, 1.0, "0 pF to 1 F"};
+constexpr Range k_share{1e-3, 2.0, "0.1 % to 200 %"};
+constexpr Range k_amperes{1e-9, 1e3, "1e-6 mA to 1000 A"};
 constexpr Range k_watts{1e-6, 1e9, "1e-6 W to 1e6 kW"};
 
 void read_lines(const YamlMap& map, SystemType& system) {
@@ -118,6 +121,45 @@ void read_instrument_entry(const YamlMap& map, InstrumentType& instrument) {
   instrument.threshold = map.quantity("threshold", Dimension::voltage, k_positive_volts).value_or(0.0);
 }
 
+/// An effect takes its threshold as volts, as a share of the nominal voltage, or as a current.
+void read_effect(const YamlMap& map, LoadEffect& effect) {
+  map.require("what");
+  effect.what = map.choice<std::string>("what", {{"lamp_glows", "lamp_glows"},
+                                                 {"input_reads_on", "input_reads_on"},
+                                                 {"coil_stays_in", "coil_stays_in"},
+                                                 {"coil_pulls_in", "coil_pulls_in"},
+                                                 {"device_trips", "device_trips"},
+                                                 {"alarm_sounds", "alarm_sounds"}})
+                    .value_or("");
+  effect.volts = map.quantity("volts", Dimension::voltage, k_positive_volts).value_or(0.0);
+  effect.share = map.quantity("share", Dimension::ratio, k_share).value_or(0.0);
+  effect.current = map.quantity("current", Dimension::current, k_amperes).value_or(0.0);
+  effect.volts_at_low_current =
+      map.quantity("volts_at_low_current", Dimension::voltage, k_positive_volts).value_or(0.0);
+  effect.rectifies = map.flag("rectifies").value_or(false);
+  effect.admittance_factor = map.number("admittance_factor", {0.001, 1000.0, "0.001 to 1000"}).value_or(1.0);
+  map.require("source");
+  effect.source = map.text("source").value_or("");
+  const bool by_current = effect.what == "device_trips" || effect.rectifies;
+  if (by_current ? effect.current <= 0.0 : map.has("volts") == map.has("share"))
+    map.error(map.place(), by_current ? "current is missing: from which current on?"
+                                      : "takes either volts or share, a threshold at its terminals");
+}
+
+void read_effects(const YamlMap& map, LoadKind& load) {
+  if (!map.has("effects")) return;
+  const auto* effects = map.list("effects", "[{what: coil_stays_in, share: 20 %, source: ...}]");
+  if (effects == nullptr) return;
+  for (const YamlNode& node : *effects) {
+    const YamlMap parts(map.reader(), node, map.owner() + ": effect",
+                        {"what", "volts", "share", "current", "volts_at_low_current", "rectifies",
+                         "admittance_factor", "source"});
+    LoadEffect effect;
+    if (parts.is_map()) read_effect(parts, effect);
+    load.effects.push_back(std::move(effect));
+  }
+}
+
 void read_load_entry(const YamlMap& map, LoadKind& load) {
   load.label = map.text("label").value_or(load.name);
   load.power_factor = map.number("power_factor", {0.01, 1.0, "0.01 to 1"}).value_or(1.0);
@@ -126,7 +168,12 @@ void read_load_entry(const YamlMap& map, LoadKind& load) {
       map.quantity("standby_resistance", Dimension::resistance, k_input_ohms).value_or(0.0);
   load.standby_capacitance =
       map.quantity("standby_capacitance", Dimension::capacitance, k_farads).value_or(0.0);
-  map.require("default_power");
+  load.nominal_volts = map.quantity("nominal", Dimension::voltage, k_positive_volts).value_or(0.0);
+  load.default_capacitance =
+      map.quantity("default_capacitance", Dimension::capacitance, k_farads).value_or(0.0);
+  load.filter = map.flag("filter").value_or(false);
+  read_effects(map, load);
+  if (load.default_capacitance == 0.0) map.require("default_power");
   load.default_power = map.quantity("default_power", Dimension::power, k_watts).value_or(0.0);
 }
 
@@ -145,10 +192,10 @@ void read_instruments(const CatalogueReading& reading, const YamlNode& node) {
 }
 
 void read_loads(const CatalogueReading& reading, const YamlNode& node) {
-  read_entries(
-      reading, node, "load",
-      {"label", "power_factor", "capacitive", "standby_resistance", "standby_capacitance", "default_power"},
-      reading.catalogue.loads, read_load_entry);
+  read_entries(reading, node, "load",
+               {"label", "power_factor", "capacitive", "standby_resistance", "standby_capacitance",
+                "default_power", "nominal", "default_capacitance", "filter", "effects"},
+               reading.catalogue.loads, read_load_entry);
 }
 
 }  // namespace io

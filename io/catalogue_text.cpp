@@ -207,17 +207,38 @@ Lines details(const InstrumentType& i) {
   return lines;
 }
 
+std::string effect_text(const netlists::LoadEffect& e) {
+  std::string from;
+  if (e.rectifies)
+    from = fmt::format("from {} uA into {} V behind its rectifier", number(e.current * 1e6), number(e.volts));
+  else if (e.what == "device_trips")
+    from = fmt::format("from {} mA", number(e.current * 1e3));
+  else if (e.share > 0)
+    from = fmt::format("from {} % of its nominal voltage", number(e.share * 100));
+  else if (e.volts_at_low_current > 0)
+    from = fmt::format("from {} V, or from {} V while it draws no more than {} mA", number(e.volts),
+                       number(e.volts_at_low_current), number(e.current * 1e3));
+  else
+    from = fmt::format("from {} V", number(e.volts));
+  return from + " (" + e.source + ")";
+}
+
 Lines details(const LoadKind& l) {
   Lines lines{{"what it is", l.label},
               {"power factor", number(l.power_factor) + (l.power_factor == 1 ? ""
                                                          : l.capacitive      ? ", leading"
                                                                              : ", lagging")},
-              {"power", watts(l.default_power) + " where the model gives none"}};
+              l.default_capacitance > 0
+                  ? std::pair<std::string, std::string>{"capacitance", farads(l.default_capacitance) +
+                                                                           " where the model gives none"}
+                  : std::pair<std::string, std::string>{
+                        "power", watts(l.default_power) + " where the model gives none"}};
   std::string standby;
   if (l.standby_resistance > 0) standby = ohms(l.standby_resistance);
   if (l.standby_capacitance > 0)
     standby += (standby.empty() ? "" : " beside ") + farads(l.standby_capacitance);
   lines.emplace_back("standby", standby.empty() ? "open" : standby);
+  for (const auto& effect : l.effects) lines.emplace_back(effect.what, effect_text(effect));
   return lines;
 }
 

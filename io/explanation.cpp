@@ -4,6 +4,7 @@
 #include <cmath>
 #include <stdexcept>
 
+#include "io/effects_text.h"
 #include "io/findings_view.h"
 #include "io/reading_curve.h"
 #include "io/text_layout.h"
@@ -17,6 +18,7 @@ using netlists::Findings;
 using netlists::PlaceFindings;
 using netlists::Reading;
 
+constexpr int k_effects_shown = 20;
 constexpr int k_digits = 4;  // of the figures that have to add up
 
 const ConductorFindings& find(const Findings& findings, const std::string& id) {
@@ -197,7 +199,8 @@ std::string explanation(const Findings& findings, const std::string& id, int wid
   out += settles(conductor, width);
   for (const PlaceFindings& place : conductor.places)
     out += "\n" + thevenin(place, width) + contributions(place, width) + readings(place, width) +
-           indicators(place, width) + curve(findings, conductor, place, width);
+           indicators(place, width) + effects_text(findings, width, place.place, k_effects_shown) +
+           curve(findings, conductor, place, width);
   if (conductor.places.empty()) out += "\nIt can be reached at no place of the model.\n";
   return out + sheet_foot(findings, width);
 }

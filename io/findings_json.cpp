@@ -78,6 +78,24 @@ ordered_json conductor_json(const ConductorFindings& conductor, Numbers& number)
   return out;
 }
 
+/// Where no length decides, run_length_m is null; the margin is negative where it happens.
+ordered_json effect_json(const netlists::Effect& effect, Numbers& number) {
+  const std::string where = effect.what + " at " + effect.where;
+  ordered_json out;
+  out["what"] = effect.what;
+  out["where"] = effect.where;
+  out["subject"] = effect.subject;
+  out["value"] = number.real(effect.value, where);
+  out["threshold"] = number.real(effect.threshold, where + ": threshold");
+  out["margin"] = number.real(effect.threshold - effect.value, where + ": margin");
+  out["unit"] = effect.unit;
+  out["source"] = effect.source;
+  out["happens"] = effect.happens;
+  out["run_length_m"] =
+      effect.run_length ? number.real(*effect.run_length, where + ": run length") : ordered_json(nullptr);
+  return out;
+}
+
 /// What each reading was loaded with, so that anyone can compute it from the open circuit.
 ordered_json instrument_json(const netlists::InstrumentType& instrument) {
   ordered_json out;
@@ -108,6 +126,8 @@ std::string findings_json(const Findings& findings) {
   out["instruments"] = ordered_json::array();
   for (const auto& instrument : findings.instruments)
     out["instruments"].push_back(instrument_json(instrument));
+  out["effects"] = ordered_json::array();
+  for (const auto& effect : findings.effects) out["effects"].push_back(effect_json(effect, number));
   out["conductors"] = ordered_json::array();
   for (const ConductorFindings& conductor : findings.conductors)
     out["conductors"].push_back(conductor_json(conductor, number));

@@ -4,6 +4,7 @@
 #include <cmath>
 #include <map>
 
+#include "io/effects_text.h"
 #include "io/findings_view.h"
 #include "io/text_layout.h"
 #include "io/writers.h"
@@ -17,6 +18,7 @@ using netlists::Misleads;
 using netlists::PlaceFindings;
 using netlists::Reading;
 
+constexpr int k_effects_shown = 8;
 constexpr int k_indent = 6;  // columns, of the lines below a row
 
 /// Volts in the table: what no instrument shows is not spelt out.
@@ -215,7 +217,7 @@ std::string ranked_table(const Findings& findings, int width, bool colour, const
   const Shape shape = fitting(shown, instruments, width);
   const std::vector<std::string> blocks = shape.table.blocks();
 
-  std::string out = sheet_head(findings, date, width);
+  std::string out = sheet_head(findings, date, width) + hurting_text(findings, width);
   if (!shown.empty())
     out += "\n" +
            paragraph("",
@@ -230,6 +232,7 @@ std::string ranked_table(const Findings& findings, int width, bool colour, const
         text += blocks[k + 1] + details(*shown[k], instruments, shape.readings_below, width);
     if (!text.empty()) out += heading(group.title, group.colour, colour, width) + text;
   }
+  out += effects_text(findings, width, "", k_effects_shown);
   out += summaries(findings, width);
   out += "\n" + paragraph("", "A reading below a limit of this table never proves a conductor dead.", width);
   return out + sheet_foot(findings, width);

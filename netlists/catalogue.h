@@ -130,6 +130,20 @@ struct InstrumentType {
   std::string source;
 };
 
+/// What a load does when a voltage or current that nobody meant for it reaches its threshold.
+struct LoadEffect {
+  std::string what;      // "lamp_glows", "input_reads_on", "coil_stays_in", "device_trips", ...
+  double volts = 0.0;    // V at its terminals, or that a rectifier feeds where `rectifies`
+  double share = 0.0;    // of the nominal voltage, instead of `volts`
+  double current = 0.0;  // A; inputs: the most they may draw and be surely off
+  double volts_at_low_current =
+      0.0;                 // V, inputs: surely off below it while the current stays below `current`
+  bool rectifies = false;  // the load is a bridge rectifier into `volts`; `current` is the threshold
+  double admittance_factor =
+      1.0;  // its admittance at the threshold over that at work: 10 for a cold filament
+  std::string source;
+};
+
 struct LoadKind {
   std::string name;  // "resistive"
   std::string label;
@@ -138,6 +152,10 @@ struct LoadKind {
   double standby_resistance = 0.0;   // ohm in parallel, off-state; 0: none
   double standby_capacitance = 0.0;  // F in parallel, off-state; 0: none
   double default_power = 0.0;        // W, where the model gives neither power, current nor impedance
+  double nominal_volts = 0.0;        // V that it is made for; 0: those of its circuit
+  double default_capacitance = 0.0;  // F, taken instead of `default_power` where it is not 0
+  bool filter = false;               // a filter capacitor: counts for nothing in conditions
+  std::vector<LoadEffect> effects;
   std::string source;
 };
 

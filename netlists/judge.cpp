@@ -9,6 +9,7 @@
 
 #include "netlists/causes.h"
 #include "netlists/condition.h"
+#include "netlists/effects.h"
 #include "netlists/places.h"
 #include "netlists/plan.h"
 #include "netlists/probes.h"
@@ -74,6 +75,7 @@ class Judge {
       set_misleads(findings.conductors[i]);
       findings.conductors[i].settle = settle(i, findings.conductors[i]);
     }
+    findings.effects = effects(building_, lowered_, conditions_, solved_);
     findings.warnings = warnings(findings.conductors);
     rank(findings.conductors);
     findings.assumptions.emplace_back(

@@ -27,6 +27,10 @@ Complex running(const Load& load, const LoadKind& kind, double volts, double ome
     return Complex(load.resistance ? 1.0 / *load.resistance : 0.0,
                    load.capacitance ? omega * *load.capacitance : 0.0);
   }
+  if (kind.default_capacitance > 0.0 && !load.power && !load.apparent && !load.current) {
+    assumption = fmt::format("{:.3g} nF, the usual of its kind", kind.default_capacitance * 1e9);
+    return {0.0, omega * kind.default_capacitance};
+  }
   const double factor = load.power_factor.value_or(kind.power_factor);
   double apparent = 0.0;  // VA
   if (load.apparent) {
@@ -67,6 +71,11 @@ LoadModel load_model(const Building& building, const Circuit& circuit, const Loa
   const auto found = building.catalogue.loads.find(load.kind);
   const LoadKind kind = found == building.catalogue.loads.end() ? LoadKind{} : found->second;
   model.drive = load.kind == "drive";
+  model.filter = kind.filter;
+  const bool neutral = names_neutral(load.between.first.text) || names_ground(load.between.first.text);
+  const double volts =
+      volts_or_first_supply(building, circuit, neutral ? load.between.first.text : load.between.second.text);
+  model.nominal_volts = kind.nominal_volts > 0.0 ? kind.nominal_volts : volts;
   const double omega = 2 * std::numbers::pi * building.frequency;
   if (load.state == LoadState::off) return model;
   if (load.state == LoadState::standby) {
@@ -74,10 +83,7 @@ LoadModel load_model(const Building& building, const Circuit& circuit, const Loa
                                omega * kind.standby_capacitance);
     return model;
   }
-  const bool neutral = names_neutral(load.between.first.text) || names_ground(load.between.first.text);
-  const double volts =
-      volts_or_first_supply(building, circuit, neutral ? load.between.first.text : load.between.second.text);
-  model.admittance = running(load, kind, volts, omega, model.assumption);
+  model.admittance = running(load, kind, model.nominal_volts, omega, model.assumption);
   return model;
 }
 

@@ -10,6 +10,8 @@ namespace netlists {
 
 struct LoadModel {
   std::complex<double> admittance;  // S; 0: open
+  double nominal_volts = 0.0;       // V, that it is made for
+  bool filter = false;              // a filter capacitor: counts for nothing in conditions
   bool drive = false;               // its output disturbs what lies beside it
   std::string assumption;           // what was taken that the model did not say; "" if nothing
 };

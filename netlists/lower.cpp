@@ -336,7 +336,9 @@ class Lowering {
       if (model.drive) mark_drive(circuit, load);
       if (model.admittance == 0.0) continue;
       add_element(name, a, b, model.admittance);
-      out_.connections.push_back({a, b, Join::load, 1.0 / model.admittance, name});
+      out_.loads.push_back(
+          {name, circuit.name.text, load.kind, load.at.text, a, b, model.admittance, model.nominal_volts});
+      if (!model.filter) out_.connections.push_back({a, b, Join::load, 1.0 / model.admittance, name});
     }
   }
 
@@ -734,6 +736,7 @@ class Lowering {
     for (engine::Source& source : out_.network.sources) map(source.a), map(source.b);
     for (Connection& connection : out_.connections) map(connection.a), map(connection.b);
     for (LivePole& pole : out_.poles) map(pole.node);
+    for (LoweredLoad& load : out_.loads) map(load.a), map(load.b);
     out_.network.frequency = building_.frequency;
     out_.network.node_count = static_cast<int>(nodes.names.size());
     out_.node_names = nodes.names;

@@ -60,6 +60,18 @@ struct Connection {
   std::string what;           // "load LP2-7"
 };
 
+/// A load as it is connected, in its state of the stage.
+struct LoweredLoad {
+  std::string name;     // "load LP2-7"
+  std::string circuit;  // its name
+  std::string kind;     // catalogue name
+  std::string place;
+  int a = 0;  // nodes
+  int b = 0;
+  engine::Complex admittance;  // S
+  double nominal_volts = 0.0;  // V
+};
+
 /// A pole of a live supply.
 struct LivePole {
   int node = 0;
@@ -80,6 +92,7 @@ struct Lowered {
   std::map<std::string, int> at;                          // "spare-1.a@JB-4", "ground@JB-4" -> node
   std::vector<ConductorPath> conductors;                  // every wire of the model, then raceways and armour
   std::vector<Connection> connections;                    // within conductors, through contacts, bonds, loads
+  std::vector<LoweredLoad> loads;                         // those that are not off
   std::vector<LivePole> poles;
   std::vector<std::string> floating_supplies;  // names of supplies without a grounded pole
   std::vector<std::string> states;             // every breaker and switch state assumed, in words
