@@ -117,6 +117,10 @@ void read_instrument_entry(const YamlMap& map, InstrumentType& instrument) {
   }
   read_ranges(map, instrument);
   instrument.capacitance = map.quantity("capacitance", Dimension::capacitance, k_farads).value_or(0.0);
+  instrument.common_to_earth =
+      map.quantity("common_to_earth", Dimension::capacitance, k_farads).value_or(0.0);
+  instrument.three_lamps = map.flag("three_lamps").value_or(false);
+  instrument.to_ground_only = map.flag("to_ground_only").value_or(false);
   if (instrument.kind == InstrumentKind::indicator) map.require("threshold");
   instrument.threshold = map.quantity("threshold", Dimension::voltage, k_positive_volts).value_or(0.0);
 }
@@ -187,7 +191,8 @@ void read_systems(const CatalogueReading& reading, const YamlNode& node) {
 
 void read_instruments(const CatalogueReading& reading, const YamlNode& node) {
   read_entries(reading, node, "instrument",
-               {"label", "kind", "resistance", "capacitance", "ranges", "threshold"},
+               {"label", "kind", "resistance", "capacitance", "common_to_earth", "three_lamps",
+                "to_ground_only", "ranges", "threshold"},
                reading.catalogue.instruments, read_instrument_entry);
 }
 

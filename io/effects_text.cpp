@@ -72,4 +72,18 @@ std::string effects_text(const Findings& findings, int width, const std::string&
          out;
 }
 
+std::string patterns_text(const Findings& findings, int width) {
+  std::string out;
+  for (const netlists::ReceptaclePattern& pattern : findings.patterns)
+    out += paragraph(
+        "  ",
+        fmt::format("{} at {}, {}: lit {}: {}. L-N {}, L-G {}, N-G {}.", printable(pattern.instrument),
+                    printable(pattern.place), printable(pattern.circuit), pattern.lit, pattern.meaning,
+                    volts_text(pattern.hot_neutral), volts_text(pattern.hot_ground),
+                    volts_text(pattern.neutral_ground)),
+        width, 4);
+  if (out.empty()) return "";
+  return "\n" + paragraph("", "Lamps of receptacle testers; no pattern proves anything dead", width) + out;
+}
+
 }  // namespace io

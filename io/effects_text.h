@@ -14,4 +14,7 @@ std::string hurting_text(const netlists::Findings& findings, int width);
 /// at most `most` of them with the number left out; otherwise those at that place.
 std::string effects_text(const netlists::Findings& findings, int width, const std::string& place, int most);
 
+/// What receptacle testers of three lamps show; "" where the model lists none.
+std::string patterns_text(const netlists::Findings& findings, int width);
+
 }  // namespace io

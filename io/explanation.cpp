@@ -142,6 +142,29 @@ std::string contributions(const PlaceFindings& place, int width) {
   return "\n  Who puts it there\n" + table.indented(2);
 }
 
+/// What else the instruments may show: on other ranges, with leads swapped, with one lead in the air.
+std::string remarks(const PlaceFindings& place, int width) {
+  std::string out;
+  for (const Reading& reading : place.readings) {
+    const std::string what = printable(reading.instrument) + " to " + printable(reading.reference) + ": ";
+    if (reading.swapped)
+      out += paragraph("  ",
+                       fmt::format("{}{} with its common lead on {}, {} with the leads swapped.", what,
+                                   volts_text(reading.volts, 3), printable(reading.reference),
+                                   volts_text(*reading.swapped, 3)),
+                       width, 4);
+    if (reading.reference != place.reference || reading.on_ranges.size() < 2) continue;
+    std::string ranges;
+    for (const auto& range : reading.on_ranges)
+      ranges += fmt::format("{}{} on {}", ranges.empty() ? "" : ", ",
+                            range.volts > range.full_scale ? "off scale" : volts_text(range.volts, 3),
+                            volts_text(range.full_scale, 2));
+    out += paragraph("  ", what + ranges + "; a person settles on " + volts_text(*reading.range, 2) + ".",
+                     width, 4);
+  }
+  return out;
+}
+
 std::string readings(const PlaceFindings& place, int width) {
   TextTable table({{"instrument", 24},
                    {"to", std::max(12, width - 66)},
@@ -155,7 +178,7 @@ std::string readings(const PlaceFindings& place, int width) {
                  reading.range ? volts_text(*reading.range, 2) : "-", volts_text(reading.volts, 3),
                  netlists::to_string(reading.appearance), reading.judged ? "judged" : "shown only"});
   if (table.row_count() == 0) return "";
-  return "\n  Readings, the loading of the instrument included\n" + table.indented(2);
+  return "\n  Readings, the loading of the instrument included\n" + table.indented(2) + remarks(place, width);
 }
 
 std::string indicators(const PlaceFindings& place, int width) {

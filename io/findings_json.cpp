@@ -23,6 +23,13 @@ ordered_json reading_json(const Reading& reading, const std::string& where, Numb
   add_empty_percentiles(out);
   out["appearance"] = netlists::to_string(reading.appearance);
   out["judged"] = reading.judged;
+  if (!reading.on_ranges.empty()) {
+    out["on_ranges"] = ordered_json::array();
+    for (const auto& range : reading.on_ranges)
+      out["on_ranges"].push_back({{"full_scale_V", range.full_scale}, {"volts", range.volts}});
+  }
+  if (reading.swapped) out["leads_swapped_volts"] = *reading.swapped;
+  if (reading.lead_in_air) out["common_lead_in_air_volts"] = *reading.lead_in_air;
   if (reading.indicator) out["indicates"] = reading.indicates;
   return out;
 }
@@ -68,6 +75,7 @@ ordered_json conductor_json(const ConductorFindings& conductor, Numbers& number)
   out["condition"] = netlists::to_string(conductor.condition);
   out["supply"] = conductor.supply.empty() ? ordered_json(nullptr) : ordered_json(conductor.supply);
   out["isolated_supply"] = conductor.isolated_supply;
+  out["leakage"] = conductor.leakage;
   out["not_predicted"] = conductor.not_predicted;
   out["misleads"] = {{"how", netlists::to_string(conductor.misleads)}, {"probability", nullptr}};
   out["expected_reading_V"] = number.real(conductor.expected_reading, conductor.id + ": expected reading");
@@ -96,6 +104,18 @@ ordered_json effect_json(const netlists::Effect& effect, Numbers& number) {
   return out;
 }
 
+ordered_json pattern_json(const netlists::ReceptaclePattern& pattern, Numbers& number) {
+  const std::string where = pattern.circuit + " at " + pattern.place + ": lamp of " + pattern.instrument;
+  return {{"instrument", pattern.instrument},
+          {"place", pattern.place},
+          {"circuit", pattern.circuit},
+          {"hot_neutral_V", number.real(pattern.hot_neutral, where)},
+          {"hot_ground_V", number.real(pattern.hot_ground, where)},
+          {"neutral_ground_V", number.real(pattern.neutral_ground, where)},
+          {"lit", pattern.lit},
+          {"meaning", pattern.meaning}};
+}
+
 /// What each reading was loaded with, so that anyone can compute it from the open circuit.
 ordered_json instrument_json(const netlists::InstrumentType& instrument) {
   ordered_json out;
@@ -104,6 +124,7 @@ ordered_json instrument_json(const netlists::InstrumentType& instrument) {
   out["indicator"] = instrument.kind == netlists::InstrumentKind::indicator;
   out["resistance_ohm"] = instrument.resistance;
   out["capacitance_F"] = instrument.capacitance;
+  out["common_to_earth_F"] = instrument.common_to_earth;
   out["ranges"] = ordered_json::array();
   for (const auto& range : instrument.ranges)
     out["ranges"].push_back({{"full_scale_V", range.full_scale}, {"resistance_ohm", range.resistance}});
@@ -128,6 +149,9 @@ std::string findings_json(const Findings& findings) {
     out["instruments"].push_back(instrument_json(instrument));
   out["effects"] = ordered_json::array();
   for (const auto& effect : findings.effects) out["effects"].push_back(effect_json(effect, number));
+  out["receptacle_patterns"] = ordered_json::array();
+  for (const auto& pattern : findings.patterns)
+    out["receptacle_patterns"].push_back(pattern_json(pattern, number));
   out["conductors"] = ordered_json::array();
   for (const ConductorFindings& conductor : findings.conductors)
     out["conductors"].push_back(conductor_json(conductor, number));

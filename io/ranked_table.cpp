@@ -127,6 +127,8 @@ std::string details(const ConductorFindings& conductor, const std::vector<std::s
   std::string text = conductor.misleads == Misleads::no ? std::string("not flagged: ")
                                                         : netlists::to_string(conductor.misleads) + ": ";
   text += condition_text(conductor) + ".";
+  if (conductor.leakage)
+    text += " Leakage: conductance carries over a tenth of it; treat as live until the leak is found.";
   if (conductor.not_predicted) text += " Not predicted: expect more than shown.";
   if (at.place != nullptr) {
     if (readings_below) text += " Reads " + readings_text(at, instruments) + ".";
@@ -233,7 +235,7 @@ std::string ranked_table(const Findings& findings, int width, bool colour, const
     if (!text.empty()) out += heading(group.title, group.colour, colour, width) + text;
   }
   out += effects_text(findings, width, "", k_effects_shown);
-  out += summaries(findings, width);
+  out += patterns_text(findings, width) + summaries(findings, width);
   out += "\n" + paragraph("", "A reading below a limit of this table never proves a conductor dead.", width);
   return out + sheet_foot(findings, width);
 }

@@ -125,6 +125,9 @@ struct InstrumentType {
   InstrumentKind kind = InstrumentKind::voltmeter;
   double resistance = 0.0;              // ohm, between its leads (with no ranges)
   double capacitance = 0.0;             // F, between its leads
+  double common_to_earth = 0.0;         // F, from its common lead to earth: case, hand or mains filter
+  bool three_lamps = false;             // a plug-in receptacle tester: its input is that of one lamp of three
+  bool to_ground_only = false;          // has no second lead: its return is its user's body
   std::vector<InstrumentRange> ranges;  // ascending; empty: one input for all readings
   double threshold = 0.0;               // V, indicators: from here on it shows something
   std::string source;

@@ -21,12 +21,21 @@ struct Band {
   double p95 = 0.0;
 };
 
+/// What a needle instrument shows on one of its ranges.
+struct RangeReading {
+  double full_scale = 0.0;  // V
+  double volts = 0.0;       // V; over full_scale: off scale
+};
+
 struct Reading {
-  std::string instrument;       // name
-  std::string reference;        // "ground", "earth" or CIRCUIT.wire
-  std::optional<double> range;  // V full scale, where the needle matters
-  double volts = 0.0;           // V RMS, the instrument's loading included
-  std::optional<Band> band;     // V, over the draws
+  std::string instrument;               // name
+  std::string reference;                // "ground", "earth" or CIRCUIT.wire
+  std::optional<double> range;          // V full scale, where the needle matters
+  double volts = 0.0;                   // V RMS, the instrument's loading included
+  std::optional<Band> band;             // V, over the draws
+  std::vector<RangeReading> on_ranges;  // ascending; empty for an instrument of one input
+  std::optional<double> swapped;        // V with its leads swapped, between soft points where over 5 % apart
+  std::optional<double> lead_in_air;    // V with its common lead touching nothing; readings to ground only
   Appearance appearance = Appearance::unclear;
   bool judged = false;     // to ground or to the own neutral, by a voltmeter
   bool indicator = false;  // only lights, buzzes or glows
@@ -90,6 +99,18 @@ struct Settle {
   std::string why;                        // words for people, with what would settle it otherwise
 };
 
+/// What the three lamps of a plug-in tester show at a receptacle.
+struct ReceptaclePattern {
+  std::string instrument;
+  std::string place;
+  std::string circuit;
+  double hot_neutral = 0.0;  // V across each lamp, all three loading
+  double hot_ground = 0.0;
+  double neutral_ground = 0.0;
+  std::string lit;      // "L-N, L-G", "none"
+  std::string meaning;  // what the pattern is taken for
+};
+
 struct ConductorFindings {
   std::string id;  // CIRCUIT.wire or RUN.raceway
   std::optional<int> rank;
@@ -98,6 +119,7 @@ struct ConductorFindings {
   std::optional<double> probability;  // that it misleads, over the draws; null without
   double expected_reading = 0.0;      // V, the one it is ranked by
   bool not_predicted = false;         // shares a run with a drive's output
+  bool leakage = false;               // conductance carries over a tenth of what it reads somewhere
   bool isolated_supply = false;       // belongs to a supply without a grounded pole
   std::string supply;                 // of an energised conductor
   Settle settle;
@@ -114,6 +136,7 @@ struct Findings {
   unsigned seed = 1;
   int draws = 0;
   std::vector<Effect> effects;                // those that can hurt first
+  std::vector<ReceptaclePattern> patterns;    // of receptacle testers in the model's list
   std::vector<ConductorFindings> conductors;  // ranked first, by rank; then the others in model order
   std::vector<std::string> states;            // every breaker and switch state assumed, in words
   std::vector<std::string> assumptions;

@@ -15,6 +15,7 @@
 #include "netlists/probes.h"
 #include "netlists/ranking.h"
 #include "netlists/reading.h"
+#include "netlists/receptacle.h"
 #include "netlists/settle.h"
 
 namespace netlists {
@@ -22,8 +23,12 @@ namespace {
 
 using engine::Complex;
 
+constexpr double k_soft = 10e3;    // ohm from earth, from here on a common lead's capacitance may matter
+constexpr double k_leakage = 0.1;  // of a reading: carried by conductance, it is leakage
 constexpr double k_net_current = 10e-3;  // A, from here on a run's net current is worth a warning
 constexpr double k_net_share = 0.05;     // of the largest current in the run
+
+using Ports = std::map<std::pair<int, int>, Port>;
 
 std::vector<bool> determined_nodes(const engine::SolvedNetwork& solved) {
   std::vector<bool> determined(static_cast<std::size_t>(solved.network().node_count), true);
@@ -76,6 +81,7 @@ class Judge {
       findings.conductors[i].settle = settle(i, findings.conductors[i]);
     }
     findings.effects = effects(building_, lowered_, conditions_, solved_);
+    findings.patterns = receptacle_patterns(building_, lowered_, solved_);
     findings.warnings = warnings(findings.conductors);
     rank(findings.conductors);
     findings.assumptions.emplace_back(
@@ -99,7 +105,20 @@ class Judge {
     for (const Access& access : path.access) {
       if (determined_[access.node]) found.places.push_back(place(index, access, found));
     }
+    for (const PlaceFindings& at : found.places)
+      found.leakage = found.leakage || (found.condition == Condition::floating && leaks(at));
     return found;
+  }
+
+  // A reading scales all that adds up to it alike: the share of conductance is that of the open circuit.
+  static bool leaks(const PlaceFindings& at) {
+    Complex conductive = 0.0;
+    Complex all = 0.0;
+    for (const ContributionEntry& entry : at.contributions) {
+      all += entry.volts;
+      if (entry.path == "conductive") conductive += entry.volts;
+    }
+    return std::abs(conductive) > k_leakage * std::abs(all) && std::abs(conductive) > 0.0;
   }
 
   // Causes, and what will be probed; the readings follow once all probes are known.
@@ -123,7 +142,7 @@ class Judge {
   // ---- readings ----------------------------------------------------------------------------------
 
   void take_readings(std::vector<ConductorFindings>& all) {
-    const std::map<std::pair<int, int>, Port> ports = solve_ports();
+    const Ports ports = solve_ports();
     std::size_t next = 0;
     for (ConductorFindings& found : all) {
       for (PlaceFindings& at : found.places) {
@@ -132,20 +151,25 @@ class Judge {
         at.open_circuit = port.volts;
         at.source_impedance = port.impedance;
         at.short_circuit = port.impedance == 0.0 ? 0.0 : std::abs(port.volts / port.impedance);
-        for (const Probe& probe : probes)
-          add_readings(at, probe, ports.at({probe.node, probe.reference_node}));
+        for (const Probe& probe : probes) add_readings(at, probe, ports);
       }
     }
   }
 
-  // Every pair of points that is probed, solved together.
-  std::map<std::pair<int, int>, Port> solve_ports() const {
-    std::map<std::pair<int, int>, Port> ports;
+  // Every pair of points that is probed, solved together, and the points of those that are not to ground by
+  // themselves: an instrument's common lead has a capacitance to earth.
+  Ports solve_ports() const {
+    Ports ports;
     std::vector<std::pair<int, int>> apart;
+    const auto want = [&](int a, int b) {
+      if (ports.try_emplace({a, b}).second && a != b) apart.emplace_back(a, b);
+    };
     for (const std::vector<Probe>& probes : probed_) {
       for (const Probe& probe : probes) {
-        const std::pair<int, int> pair{probe.node, probe.reference_node};
-        if (ports.try_emplace(pair).second && pair.first != pair.second) apart.push_back(pair);
+        want(probe.node, probe.reference_node);
+        if (probe.reference == probes.front().reference) continue;
+        want(probe.node, 0);
+        want(probe.reference_node, 0);
       }
     }
     const std::vector<Complex> impedances = solved_.source_impedances(apart);
@@ -154,14 +178,31 @@ class Judge {
     return ports;
   }
 
-  void add_readings(PlaceFindings& found, const Probe& probe, const Port& port) const {
+  void add_readings(PlaceFindings& found, const Probe& probe, const Ports& ports) const {
+    const Port& port = ports.at({probe.node, probe.reference_node});
+    const bool to_ground = probe.reference == found.reference;
+    const std::optional<PointPair> soft = to_ground ? std::nullopt : soft_pair(probe, ports);
     for (const InstrumentType& instrument : building_.instruments) {
-      Reading reading = read(instrument, port, building_.frequency);
+      if (instrument.to_ground_only && !to_ground) continue;
+      const bool three = soft && instrument.common_to_earth > 0.0;
+      Reading reading = three ? read_soft(instrument, *soft, building_.frequency)
+                              : read(instrument, port, building_.frequency);
+      if (to_ground && !reading.indicator && instrument.common_to_earth > 0.0)
+        reading.lead_in_air = read_lead_in_air(instrument, port, building_.frequency);
       reading.reference = probe.reference;
       reading.appearance = places_.appearance(reading.volts, found.place);
       reading.judged = probe.judged && !reading.indicator;
       found.readings.push_back(std::move(reading));
     }
+  }
+
+  // Both points with their impedances from earth, where neither is held by anything firmer than coupling.
+  static std::optional<PointPair> soft_pair(const Probe& probe, const Ports& ports) {
+    const Port& a = ports.at({probe.node, 0});
+    const Port& b = ports.at({probe.reference_node, 0});
+    if (std::abs(a.impedance) < k_soft || std::abs(b.impedance) < k_soft) return std::nullopt;
+    const Complex between = ports.at({probe.node, probe.reference_node}).impedance;
+    return PointPair{a.volts, b.volts, a.impedance, b.impedance, (a.impedance + b.impedance - between) / 2.0};
   }
 
   // ---- what settles it ---------------------------------------------------------------------------
@@ -181,6 +222,11 @@ class Judge {
       case Condition::floating:
         break;
     }
+    if (found.leakage)
+      return {
+          std::nullopt, 0.0, 0.0,
+          "leakage: conductance carries over a tenth of what it reads, so a real if weak source is in it; "
+          "an instrument that loads hides it and proves nothing; treat as live until the leak is found"};
     return settle_coupling(worst_readings(found), weakest_source(found));
   }
 
