@@ -132,7 +132,7 @@ void check_primary(const YamlMap& map, const Supply& supply) {
 void read_supply(ModelReading& reading, const YamlNode& key, const YamlNode& value) {
   const YamlMap map(reading.reader, value, fmt::format("supply '{}'", key.text),
                     {"system", "grounding", "grounding_resistance", "fed_from", "stray", "impedance", "angle",
-                     "vector_group", "asynchronous", "rating"},
+                     "vector_group", "asynchronous", "rating", "insulation"},
                     &key);
   check_id(reading.reader, key, map.owner());
   Supply supply;
@@ -152,6 +152,8 @@ void read_supply(ModelReading& reading, const YamlNode& key, const YamlNode& val
   check_primary(map, supply);
   supply.asynchronous = map.flag("asynchronous").value_or(false);
   supply.rating = map.quantity("rating", Dimension::apparent, k_apparent).value_or(0.0);
+  supply.insulation =
+      map.quantity("insulation", Dimension::resistance, {1.0, 1e15, "1 ohm to 1e6 Gohm"}).value_or(0.0);
   reading.building.supplies.push_back(std::move(supply));
 }
 

@@ -35,6 +35,7 @@ struct Supply {
   double grounding_resistance = 0.0;  // ohm, for `resistance`
   std::optional<FedFrom> fed_from;
   std::vector<double> stray_line_to_ground;          // F, one a pole in order (neutral last) or one for all
+  double insulation = 0.0;                           // ohm, from each pole to ground; 0: none taken
   std::optional<double> stray_primary_to_secondary;  // F, in all
   std::optional<std::complex<double>> impedance;     // ohm per line, R + jX
   std::optional<double> angle;                       // rad, of its first line

@@ -7,6 +7,7 @@
 #include <map>
 #include <numbers>
 #include <set>
+#include <tuple>
 
 #include "netlists/load_effects.h"
 #include "netlists/touch.h"
@@ -16,6 +17,7 @@ namespace {
 
 using engine::Complex;
 
+constexpr double k_fault = 0.1;             // ohm, of a line faulted to ground
 constexpr double k_worth_telling = 0.01;    // of the threshold
 constexpr std::size_t k_most_touched = 64;  // conductors of one place that are taken together
 
@@ -47,13 +49,6 @@ class EffectFinder {
   std::vector<Effect> find() {
     for (const LoweredLoad& load : lowered_.loads) add_load(load);
     add_touches();
-    std::stable_sort(found_.begin(), found_.end(), [](const Effect& a, const Effect& b) {
-      const auto key = [](const Effect& effect) {
-        const bool hurts = effect.what == "person_feels" && effect.happens;
-        return std::pair(hurts ? 0 : effect.happens ? 1 : 2, -effect.value / effect.threshold);
-      };
-      return key(a) < key(b);
-    });
     return std::move(found_);
   }
 
@@ -298,11 +293,57 @@ class EffectFinder {
   std::vector<Effect> found_;
 };
 
+// The effects while one pole of a floating supply is faulted to ground, said so in each subject.
+std::vector<Effect> while_faulted(const Building& building, const Lowered& lowered,
+                                  const Conditions& conditions, const LivePole& pole) {
+  Lowered faulted = lowered;
+  faulted.network.elements.push_back({pole.node, 0, 1.0 / k_fault});
+  faulted.element_names.push_back("fault of " + pole.supply + " " + pole.name);
+  const engine::SolvedNetwork solved(faulted.network);
+  std::vector<Effect> found = EffectFinder(building, faulted, conditions, solved).find();
+  for (Effect& effect : found)
+    effect.subject += fmt::format("; while {} of {} is faulted to ground", pole.name, pole.supply);
+  return found;
+}
+
+// Of a place's effects of one kind on one load, the one that goes furthest counts; of people, the place's.
+void keep_larger(std::vector<Effect>& all, const std::vector<Effect>& more) {
+  const auto key = [](const Effect& effect) {
+    const std::size_t word = effect.what == "person_feels" ? 0 : effect.subject.find(',');
+    return std::tuple(effect.what, effect.where, effect.subject.substr(0, word));
+  };
+  for (const Effect& effect : more) {
+    const auto same =
+        std::find_if(all.begin(), all.end(), [&](const Effect& a) { return key(a) == key(effect); });
+    if (same == all.end())
+      all.push_back(effect);
+    else if (effect.value > same->value * (1 + 1e-6))
+      *same = effect;
+  }
+}
+
+void put_in_order(std::vector<Effect>& all) {
+  std::stable_sort(all.begin(), all.end(), [](const Effect& a, const Effect& b) {
+    const auto key = [](const Effect& effect) {
+      const bool hurts = effect.what == "person_feels" && effect.happens;
+      return std::pair(hurts ? 0 : effect.happens ? 1 : 2, -effect.value / effect.threshold);
+    };
+    return key(a) < key(b);
+  });
+}
+
 }  // namespace
 
 std::vector<Effect> effects(const Building& building, const Lowered& lowered, const Conditions& conditions,
                             const engine::SolvedNetwork& solved) {
-  return EffectFinder(building, lowered, conditions, solved).find();
+  std::vector<Effect> found = EffectFinder(building, lowered, conditions, solved).find();
+  for (const LivePole& pole : lowered.poles) {
+    const std::vector<std::string>& floating = lowered.floating_supplies;
+    if (std::find(floating.begin(), floating.end(), pole.supply) == floating.end()) continue;
+    keep_larger(found, while_faulted(building, lowered, conditions, pole));
+  }
+  put_in_order(found);
+  return found;
 }
 
 }  // namespace netlists

@@ -114,6 +114,11 @@ void Lowering::add_grounding(const Supply& supply, const SystemType& system) {
   }
   const double omega = 2 * std::numbers::pi * building_.frequency;
   const std::vector<std::string> names = poles(system);
+  for (const std::string& name : names) {
+    if (supply.insulation > 0.0)
+      add_element("insulation " + supply.name.text + " " + name, joints_.point(terminal(supply, name)), 0,
+                  1.0 / supply.insulation);
+  }
   std::vector<double> stray = supply.stray_line_to_ground;
   if (stray.empty() && floats(building_, supply)) {
     stray.assign(names.size(), k_default_stray);

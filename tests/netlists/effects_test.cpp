@@ -236,5 +236,28 @@ TEST(Effects, AResidualCurrentDeviceSeesTheCablesCharge) {
   EXPECT_NEAR(trip->value, k_two_pi * 60 * to_rest * 300 * 120, 0.03 * trip->value);
 }
 
+// An isolated 120 V supply of two legs: with one faulted to ground a person on the other has all of 120 V,
+// and the current is that of the body network alone, 120 V / 1986 ohm.
+TEST(Effects, AFaultOfAnIsolatedSupplyPutsItsVoltageOnTheOtherLeg) {
+  const Findings findings =
+      Solved(
+          "supplies: {IT1: {system: 120 two-wire, grounding: isolated, insulation: 10 Mohm}}\n"
+          "panels: {IP: {supply: IT1}}\n"
+          "runs: {C1: {from: IP, to: Room, length: 20 m, raceway: EMT 1/2}}\n"
+          "circuits:\n"
+          "  I1:\n"
+          "    panel: IP\n"
+          "    slot: [1, 3]\n"
+          "    wires: {line1: THHN 12, line2: THHN 12, ground: THHN 12}\n"
+          "    runs: [C1]\n"
+          "    loads: []\n")
+          .findings();
+  const Effect* felt = effect(findings, "person_feels", "I1.line");
+  ASSERT_NE(felt, nullptr);
+  EXPECT_THAT(felt->subject, HasSubstr("faulted to ground"));
+  EXPECT_THAT(felt->subject, HasSubstr("AC-4"));
+  EXPECT_NEAR(felt->value, 120.0 / 1986.0, 1e-3 * felt->value + 1e-4);
+}
+
 }  // namespace
 }  // namespace netlists

@@ -185,5 +185,19 @@ TEST(BothWays, ANonContactDetectorCannotTell) {
   EXPECT_EQ(find(conductor(findings, "L1.hot"), "Room", "non_contact_detector", "L1.neutral"), nullptr);
 }
 
+// A magnetically induced voltage has an impedance of milliohms behind it: 3 kohm shows what 10 Mohm shows.
+TEST(BothWays, AnInducedLoopDoesNotCollapse) {
+  std::string model = spare("100 m", "bonds: [{at: LP, joins: [spare.a, ground]}]\n");
+  const auto at = model.find("loads: []");
+  model.replace(at, 9, "loads: [{at: Room, between: [hot, neutral], kind: resistive, power: 1800 W}]");
+  const Solved solved(model);
+  const Findings findings = solved.findings();
+  const ConductorFindings& a = conductor(findings, "spare.a");
+  EXPECT_EQ(a.condition, Condition::grounded);
+  const double high = reading(a, "Room", "dmm", "ground");
+  EXPECT_GT(high, 1e-4);
+  EXPECT_NEAR(reading(a, "Room", "low_impedance", "ground"), high, 0.01 * high);
+}
+
 }  // namespace
 }  // namespace netlists
