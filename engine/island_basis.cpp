@@ -13,6 +13,23 @@ constexpr double k_small_residual = 1e-15;  // rounding of the last digit, no mo
 
 double size_of(Complex value) { return std::abs(value.real()) + std::abs(value.imag()); }
 
+/// Adds an admittance block between ports to the dense block of `unknowns`.
+void add_block(const Eigen::MatrixXcd& block, const std::vector<Port>& ports,
+               const std::vector<int>& unknowns, Eigen::MatrixXcd& entries) {
+  std::array<std::vector<int>, 4> rows;
+  const auto row_of = [&](int unknown) {
+    return std::find(unknowns.begin(), unknowns.end(), unknown) - unknowns.begin();
+  };
+  for (const Port& port : ports)
+    for (int p = 0; p < 4; ++p)
+      rows[p].push_back(p < port.count ? static_cast<int>(row_of(port.terms[p].unknown)) : -1);
+  for (std::size_t j = 0; j < ports.size(); ++j)
+    for (int q = 0; q < ports[j].count; ++q)
+      for (std::size_t i = 0; i < ports.size(); ++i)
+        for (int p = 0; p < ports[i].count; ++p)
+          entries(rows[p][i], rows[q][j]) += ports[i].terms[p].sign * ports[j].terms[q].sign * block(i, j);
+}
+
 /// Entries (p, q) of an admittance block between ports, into the equations of their unknowns.
 void add_block(const Eigen::MatrixXcd& block, const std::vector<Port>& ports,
                std::vector<Eigen::Triplet<Complex>>& entries) {
@@ -84,7 +101,68 @@ struct IslandBasis::Balance {
 IslandBasis::IslandBasis(FlatNetwork network)
     : network_(std::move(network)), islands_(find_islands(network_)) {
   number_unknowns();
-  factor_.emplace(assemble());
+  factor_ = SymmetricFactor::make(unknown_count_, pattern(),
+                                  [this](int index, Eigen::MatrixXcd& entries) { block(index, entries); });
+  if (!factor_) pivoted_.emplace(assemble());
+}
+
+void IslandBasis::solve_for(Eigen::VectorXcd& right_side) const {
+  if (factor_) return factor_->solve(right_side);
+  Eigen::MatrixXcd column = right_side;
+  pivoted_->solve(column);
+  right_side = column.col(0);
+}
+
+void IslandBasis::unknowns_of(int block, std::vector<int>& unknowns) const {
+  unknowns.clear();
+  const auto add = [&](const Port& port) {
+    for (int i = 0; i < port.count; ++i) unknowns.push_back(port.terms[i].unknown);
+  };
+  const int sections = static_cast<int>(network_.sections.size());
+  if (block < sections) {
+    const Section& section = network_.sections[block];
+    for (const auto ends : {network_.from(section), network_.to(section)})
+      for (const int node : ends) add(node_port(node, false));
+  } else {
+    const Branch& branch = network_.branches[block - sections];
+    add(drop_port(branch.a, branch.b, false));
+  }
+  std::sort(unknowns.begin(), unknowns.end());
+  unknowns.erase(std::unique(unknowns.begin(), unknowns.end()), unknowns.end());
+}
+
+BlockPattern IslandBasis::pattern() const {
+  BlockPattern pattern;
+  std::vector<int> unknowns;
+  const int count = static_cast<int>(network_.sections.size() + network_.branches.size());
+  for (int index = 0; index < count; ++index) {
+    unknowns_of(index, unknowns);
+    pattern.unknowns.insert(pattern.unknowns.end(), unknowns.begin(), unknowns.end());
+    pattern.begin.push_back(static_cast<int>(pattern.unknowns.size()));
+  }
+  return pattern;
+}
+
+void IslandBasis::block(int index, Eigen::MatrixXcd& entries) const {
+  std::vector<int> unknowns;
+  std::vector<Port> ports;
+  unknowns_of(index, unknowns);
+  entries.setZero(static_cast<Eigen::Index>(unknowns.size()), static_cast<Eigen::Index>(unknowns.size()));
+  const int sections = static_cast<int>(network_.sections.size());
+  if (index >= sections) {
+    const Branch& branch = network_.branches[index - sections];
+    const Eigen::MatrixXcd single = Eigen::MatrixXcd::Constant(1, 1, branch.admittance);
+    return add_block(single, {drop_port(branch.a, branch.b, false)}, unknowns, entries);
+  }
+  const Section& section = network_.sections[index];
+  const auto from = network_.from(section), to = network_.to(section);
+  for (int i = 0; i < section.size(); ++i) ports.push_back(drop_port(from[i], to[i], false));
+  add_block(section.blocks->series, ports, unknowns, entries);
+  for (const auto ends : {from, to}) {
+    ports.clear();
+    for (const int node : ends) ports.push_back(node_port(node, false));
+    add_block(section.blocks->half_shunt, ports, unknowns, entries);
+  }
 }
 
 void IslandBasis::number_unknowns() {
@@ -202,18 +280,17 @@ IslandBasis::Balance IslandBasis::balance(const State& state, const Drive& drive
 IslandBasis::State IslandBasis::solve(const Drive& drive) const {
   State state{drive.emfs, Eigen::VectorXcd::Zero(unknown_count_), Eigen::VectorXcd::Zero(unknown_count_),
               0.0};
-  Eigen::MatrixXcd step = balance(state, drive).total();
-  factor_->solve(step);
-  state.first = step.col(0);
+  state.first = balance(state, drive).total();
+  solve_for(state.first);
   // The residual is formed from drops, each the difference of deviations and never of potentials, so one
   // correction gives what double precision can hold; more help where an island hangs on a weak load.
   Balance now = balance(state, drive);
   state.residual = now.residual();
   for (int i = 0; i < k_most_refinements; ++i) {
     const double before = state.residual;
-    step = now.total();
-    factor_->solve(step);
-    state.correction += step.col(0);
+    Eigen::VectorXcd step = now.total();
+    solve_for(step);
+    state.correction += step;
     now = balance(state, drive);
     state.residual = now.residual();
     if (state.residual < k_small_residual || state.residual > 0.5 * before) break;
@@ -228,7 +305,7 @@ std::vector<Complex> IslandBasis::source_impedances(std::span<const std::pair<in
     const Port port = drop_port(a, b, false);
     for (int i = 0; i < port.count; ++i) entries.push_back({port.terms[i].unknown, port.terms[i].sign});
   }
-  return factor_->quadratic_forms(currents);
+  return factor_ ? factor_->quadratic_forms(currents) : pivoted_->quadratic_forms(currents);
 }
 
 }  // namespace engine

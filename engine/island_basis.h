@@ -12,6 +12,7 @@
 #include "engine/flat_network.h"
 #include "engine/islands.h"
 #include "engine/sparse_lu.h"
+#include "engine/symmetric_factor.h"
 
 namespace engine {
 
@@ -72,6 +73,13 @@ class IslandBasis {
   Eigen::VectorXcd series_currents(const State& state,
                                    const Section& section) const;  // A, size n, from -> to
 
+  /// The matrix, as one block for each section and each branch: what each couples, and its entries.
+  BlockPattern pattern() const;
+  void block(int index, Eigen::MatrixXcd& entries) const;
+  /// The same in one piece, assembled by another path: for the solver that pivots, and to check against.
+  Eigen::SparseMatrix<Complex> assemble() const;
+  bool is_pivoted() const { return pivoted_.has_value(); }
+
   /// Whether earth, or a tie to it, determines the node's potential.
   bool is_determined(int node) const { return islands_.group[islands_.of_node[node]] == 0; }
   /// Whether the difference of two potentials is determined.
@@ -86,7 +94,8 @@ class IslandBasis {
   Port node_port(int node, bool emfs) const;
   Port drop_port(int a, int b, bool emfs) const;
   static Complex value(const State& state, const Port& port);
-  Eigen::SparseMatrix<Complex> assemble() const;
+  void unknowns_of(int block, std::vector<int>& unknowns) const;
+  void solve_for(Eigen::VectorXcd& right_side) const;
   Balance balance(const State& state, const Drive& drive) const;
 
   FlatNetwork network_;
@@ -94,7 +103,8 @@ class IslandBasis {
   std::vector<int> deviation_;  // unknown of each node; -1 for a root
   std::vector<int> base_;       // unknown of each island; -1 where held at zero
   int unknown_count_ = 0;
-  std::optional<SparseLu> factor_;
+  std::optional<SymmetricFactor> factor_;
+  std::optional<SparseLu> pivoted_;  // in its place where a pivot vanishes: resonances
 };
 
 }  // namespace engine
