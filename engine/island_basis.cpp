@@ -13,21 +13,24 @@ constexpr double k_small_residual = 1e-15;  // rounding of the last digit, no mo
 
 double size_of(Complex value) { return std::abs(value.real()) + std::abs(value.imag()); }
 
-/// Adds an admittance block between ports to the dense block of `unknowns`.
+/// Adds an admittance block between ports to the dense block of `unknowns`, which rise.
 void add_block(const Eigen::MatrixXcd& block, const std::vector<Port>& ports,
                const std::vector<int>& unknowns, Eigen::MatrixXcd& entries) {
-  std::array<std::vector<int>, 4> rows;
-  const auto row_of = [&](int unknown) {
-    return std::find(unknowns.begin(), unknowns.end(), unknown) - unknowns.begin();
-  };
-  for (const Port& port : ports)
-    for (int p = 0; p < 4; ++p)
-      rows[p].push_back(p < port.count ? static_cast<int>(row_of(port.terms[p].unknown)) : -1);
+  std::vector<std::array<Port::Term, 4>> rows;  // terms with their row in place of the unknown
+  rows.reserve(ports.size());
+  for (const Port& port : ports) {
+    rows.push_back(port.terms);
+    for (int p = 0; p < port.count; ++p)
+      rows.back()[p].unknown = static_cast<int>(
+          std::lower_bound(unknowns.begin(), unknowns.end(), port.terms[p].unknown) - unknowns.begin());
+  }
   for (std::size_t j = 0; j < ports.size(); ++j)
-    for (int q = 0; q < ports[j].count; ++q)
+    for (int q = 0; q < ports[j].count; ++q) {
+      Complex* column = entries.col(rows[j][q].unknown).data();
       for (std::size_t i = 0; i < ports.size(); ++i)
         for (int p = 0; p < ports[i].count; ++p)
-          entries(rows[p][i], rows[q][j]) += ports[i].terms[p].sign * ports[j].terms[q].sign * block(i, j);
+          column[rows[i][p].unknown] += rows[i][p].sign * rows[j][q].sign * block(i, j);
+    }
 }
 
 /// Entries (p, q) of an admittance block between ports, into the equations of their unknowns.

@@ -18,6 +18,7 @@ using Complex = std::complex<double>;
 constexpr double k_vanished = 1e-14;
 // From here on the product of a small matrix pays for packing its operands.
 constexpr Eigen::Index k_blocked = 32;
+constexpr Eigen::Index k_panel = 48;  // pivots; few enough that a panel stays in cache
 
 /// One group of pivots and the rows below it. In `columns` the pivots' own block comes first, with the
 /// inverse of D on its diagonal and L below; then the rows.
@@ -38,29 +39,37 @@ struct Remainder {
   Eigen::MatrixXcd entries;
 };
 
-/// Eliminates the pivots of `front` and leaves the Schur complement in its lower right. False if one
-/// vanishes.
-bool eliminate(Eigen::MatrixXcd& front, int pivots) {
-  const Eigen::Index size = front.rows(), rest = size - pivots;
-  const Eigen::VectorXd before = front.diagonal().head(pivots).cwiseAbs();
-  for (int j = 0; j < pivots; ++j) {
-    const double pivot = std::abs(front(j, j));
-    if (!(pivot > k_vanished * before[j]) || !std::isfinite(pivot)) return false;
-    const Complex inverse = 1.0 / front(j, j);
-    for (int c = j + 1; c < pivots; ++c)
-      front.col(c).tail(size - c) -= (front(c, j) * inverse) * front.col(j).tail(size - c);
-    front(j, j) = inverse;
-  }
-  const Eigen::VectorXcd inverses = front.diagonal().head(pivots);
-  const Eigen::MatrixXcd unscaled = front.bottomLeftCorner(rest, pivots);
-  for (int j = 0; j < pivots; ++j) front.col(j).tail(size - j - 1) *= inverses[j];
-  auto corner = front.bottomRightCorner(rest, rest);
+/// Takes columns `first` to `last` out of the lower triangle that begins at `last`. They hold L D there, and
+/// L afterwards.
+void take_out(Eigen::MatrixXcd& front, Eigen::Index first, Eigen::Index last) {
+  const Eigen::Index rest = front.rows() - last, width = last - first;
+  const Eigen::MatrixXcd unscaled = front.block(last, first, rest, width);
+  for (Eigen::Index j = first; j < last; ++j) front.col(j).tail(front.rows() - j - 1) *= front(j, j);
   if (rest >= k_blocked) {
-    corner.triangularView<Eigen::Lower>() -= front.bottomLeftCorner(rest, pivots) * unscaled.transpose();
-  } else {
-    for (Eigen::Index c = 0; c < rest; ++c)
-      corner.col(c).tail(rest - c).noalias() -=
-          front.block(pivots + c, 0, rest - c, pivots).lazyProduct(unscaled.row(c).transpose());
+    front.bottomRightCorner(rest, rest).triangularView<Eigen::Lower>() -=
+        front.block(last, first, rest, width) * unscaled.transpose();
+    return;
+  }
+  for (Eigen::Index c = 0; c < rest; ++c)
+    front.col(last + c).tail(rest - c).noalias() -=
+        front.block(last + c, first, rest - c, width).lazyProduct(unscaled.row(c).transpose());
+}
+
+/// Eliminates the pivots of `front`, a panel at a time, and leaves the Schur complement in its lower right.
+/// False if a pivot vanishes.
+bool eliminate(Eigen::MatrixXcd& front, int pivots) {
+  const Eigen::Index size = front.rows();
+  const Eigen::VectorXd before = front.diagonal().head(pivots).cwiseAbs();
+  for (Eigen::Index first = 0; first < pivots; first += k_panel) {
+    const Eigen::Index last = std::min<Eigen::Index>(first + k_panel, pivots);
+    for (Eigen::Index j = first; j < last; ++j) {
+      const double pivot = std::abs(front(j, j));
+      if (!(pivot > k_vanished * before[j]) || !std::isfinite(pivot)) return false;
+      front(j, j) = 1.0 / front(j, j);
+      for (Eigen::Index c = j + 1; c < last; ++c)
+        front.col(c).tail(size - c) -= (front(c, j) * front(j, j)) * front.col(j).tail(size - c);
+    }
+    take_out(front, first, last);
   }
   return true;
 }
