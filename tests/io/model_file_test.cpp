@@ -332,11 +332,13 @@ TEST(ReadModel, TakesTheModelOfTheReadme) {
 }
 
 class Files : public testing::Test {
- protected:
+ public:
   Files() : folder_(fs::path(testing::TempDir()) / ("idlewire_model_" + std::to_string(getpid()))) {
     fs::create_directory(folder_);
   }
   ~Files() override { fs::remove_all(folder_); }
+
+ protected:
   std::string put(const std::string& name, const std::string& text) const {
     std::ofstream(folder_ / name, std::ios::binary) << text;
     return (folder_ / name).string();

@@ -28,6 +28,7 @@ mpf, mpc = mpmath.mpf, mpmath.mpc
 
 AGREE = 1e-9  # relative, the accuracy that idlewire promises for its answers
 # Below this a difference of two voltages of 1e2 V is the last digit of a double and no answer.
+SOFT_OHM = 10e3  # from earth, from here on a point is soft: an instrument's common lead may move it
 LEAST_VOLTS = 1e-12
 LEAST_AMPERES = 1e-15
 RESIDUAL = 1e-30  # of the solution, relative to the sum of the terms of its row
@@ -283,6 +284,11 @@ class Ports:
         za, zb = self.column(a), self.column(b)
         return za[a] - za[b] - zb[a] + zb[b]
 
+    def matrix(self, a, b):
+        """Impedances of both nodes counted from earth, mutual ones included."""
+        za, zb = self.column(a), self.column(b)
+        return mpmath.matrix([[za[a], zb[a]], [za[b], zb[b]]])
+
 
 def instrument_admittance(instrument, range_volts, omega):
     resistance = instrument["resistance_ohm"]
@@ -290,6 +296,21 @@ def instrument_admittance(instrument, range_volts, omega):
         if r["full_scale_V"] == range_volts:
             resistance = r["resistance_ohm"]
     return mpc(1 / mpf(resistance), omega * mpf(instrument["capacitance_F"]))
+
+
+def shown_between(instrument, range_volts, ports, volts, node, other, reference):
+    """What the instrument shows. Its common lead, on `other`, has a capacitance to earth, which matters where
+    both points are soft; to ground, and where a point is stiff, it counts for nothing."""
+    omega = ports.system.network.omega
+    y = instrument_admittance(instrument, range_volts, omega)
+    common = mpc(0, omega * mpf(instrument["common_to_earth_F"]))
+    if common and reference not in ("ground", "earth"):
+        z = ports.matrix(node, other)
+        if min(abs(z[0, 0]), abs(z[1, 1])) >= SOFT_OHM:
+            load = mpmath.matrix([[y, -y], [-y, y + common]])
+            v = mpmath.lu_solve(mpmath.eye(2) + z * load, mpmath.matrix([volts[node], volts[other]]))
+            return abs(v[0] - v[1])
+    return abs((volts[node] - volts[other]) / (1 + y * ports.impedance(node, other)))
 
 
 def check_place(comparison, file, findings_instruments, system, ports, volts, conductor, place):
@@ -313,8 +334,7 @@ def check_place(comparison, file, findings_instruments, system, ports, volts, co
     for reading in place["readings"]:
         other = node_of(reading["reference"])
         instrument = findings_instruments[reading["instrument"]]
-        y = instrument_admittance(instrument, reading["range_V"], system.network.omega)
-        shown = abs((volts[node] - volts[other]) / (1 + y * ports.impedance(node, other)))
+        shown = shown_between(instrument, reading["range_V"], ports, volts, node, other, reading["reference"])
         comparison.check("reading", f"{where}, {reading['instrument']} to {reading['reference']}",
                          mpf(reading["volts"]), shown, LEAST_VOLTS)
 
