@@ -239,12 +239,13 @@ void SymmetricFactor::solve(Eigen::Ref<Eigen::VectorXcd> right_side) const {
     rest = front.below().lazyProduct(own);
     for (std::size_t i = 0; i < front.rows.size(); ++i) x[front.rows[i]] -= rest[i];
   }
-  for (auto front = impl_->fronts.rbegin(); front != impl_->fronts.rend(); ++front) {
-    auto own = x.segment(front->first, front->pivots);
-    own.array() *= front->columns.diagonal().array();
-    rest = x(front->rows);
-    own -= front->below().transpose().lazyProduct(rest);
-    front->top().transpose().triangularView<Eigen::UnitUpper>().solveInPlace(own);
+  for (std::size_t i = impl_->fronts.size(); i-- > 0;) {
+    const Front& front = impl_->fronts[i];
+    auto own = x.segment(front.first, front.pivots);
+    own.array() *= front.columns.diagonal().array();
+    rest = x(front.rows);
+    own -= front.below().transpose().lazyProduct(rest);
+    front.top().transpose().triangularView<Eigen::UnitUpper>().solveInPlace(own);
   }
   for (Eigen::Index i = 0; i < x.size(); ++i) right_side[i] = x[impl_->order.place[i]];
 }

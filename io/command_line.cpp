@@ -44,6 +44,10 @@ std::vector<Command> add_commands(CLI::App& app, CommandOptions& options) {
   CLI::App* predict = app.add_subcommand("predict", "Rank the conductors whose readings will mislead");
   add_model(predict, options);
   add_json(predict, options, "Also write the findings as JSON; - is standard output, without the table");
+  predict
+      ->add_option("--csv", options.csv,
+                   "Also write one row a reading; - is standard output, without the table")
+      ->type_name("FILE");
   predict->add_option("--gate", options.gate, "Exit with 1 if such a conductor is ranked")
       ->check(CLI::IsMember({"false_dead", "misleading"}))
       ->type_name("KIND");

@@ -31,12 +31,13 @@ void say(const std::string& text) {
 
 /// Where results go is looked at before anything is computed.
 void require_writable(const CommandOptions& options) {
-  for (const std::string& path : {options.json, options.svg}) {
+  int to_standard_output = 0;
+  for (const std::string& path : {options.json, options.csv, options.svg}) {
     const std::string why = path.empty() ? "" : unwritable(path);
     if (!why.empty()) throw InputError(why);
+    if (path == "-") ++to_standard_output;
   }
-  if (options.json == "-" && options.svg == "-")
-    throw InputError("--json and --svg cannot both go to standard output");
+  if (to_standard_output > 1) throw InputError("only one result can go to standard output");
 }
 
 /// The model, or all of its errors; its warnings are said aloud.
@@ -170,7 +171,8 @@ int predict_command(const CommandOptions& options) {
   require_writable(options);
   const Findings findings = findings_of(options);
   if (!options.json.empty()) write_whole(options.json, findings_json(findings));
-  if (options.json == "-")
+  if (!options.csv.empty()) write_whole(options.csv, findings_csv(findings));
+  if (options.json == "-" || options.csv == "-")
     say_warnings(findings.warnings, options);
   else
     write_whole("-", ranked_table(findings, output_width(), output_colour(), today()));

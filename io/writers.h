@@ -16,6 +16,10 @@ namespace io {
 /// Results file idlewire-findings/1. A number that is not finite is null, with a warning.
 std::string findings_json(const netlists::Findings& findings);
 
+/// One row a reading, by RFC 4180 (comma, CRLF, a header with the units); a number that is not finite is
+/// left empty. Ends with a column that says that a prediction is not a test.
+std::string findings_csv(const netlists::Findings& findings);
+
 /// Network file idlewire-network/1: exactly the system that was solved.
 std::string network_json(const netlists::Lowered& lowered, const engine::SolvedNetwork& solved);
 

@@ -111,14 +111,16 @@ class Judge {
   }
 
   // A reading scales all that adds up to it alike: the share of conductance is that of the open circuit.
-  static bool leaks(const PlaceFindings& at) {
+  // Of a voltage that looks dead the share means nothing: millivolts of a neutral's drop come by loss as well.
+  bool leaks(const PlaceFindings& at) const {
     Complex conductive = 0.0;
     Complex all = 0.0;
     for (const ContributionEntry& entry : at.contributions) {
       all += entry.volts;
       if (entry.path == "conductive") conductive += entry.volts;
     }
-    return std::abs(conductive) > k_leakage * std::abs(all) && std::abs(conductive) > 0.0;
+    return places_.appearance(std::abs(all), at.place) != Appearance::dead_like &&
+           std::abs(conductive) > k_leakage * std::abs(all);
   }
 
   // Causes, and what will be probed; the readings follow once all probes are known.

@@ -51,6 +51,29 @@ TEST(Judge, AGroundWireIsNotBlamedForAFedNeutral) {
   EXPECT_EQ(conductor(findings, "L1.hot").misleads, Misleads::false_dead);
 }
 
+// A cable of a dead end beside nothing live: the millivolts on it come from a neutral's drop, partly by loss.
+// That was once called leakage.
+TEST(Judge, CallsNothingLeakageThatLooksDead) {
+  const Findings findings =
+      Solved(
+          "supplies: {T1: {system: 120/240}}\npanels: {LP: {supply: T1}}\n"
+          "runs:\n"
+          "  C1: {from: LP, to: Box, length: 42 m, raceway: EMT 3/4}\n"
+          "  C3: {from: Box, to: Room, length: 22 m, raceway: none}\n"
+          "circuits:\n"
+          "  L1: {panel: LP, slot: 1, wires: {hot: THHN 12, neutral: THHN 12, ground: THHN 12}, runs: [C1],\n"
+          "       loads: [{at: Box, between: [hot, neutral], kind: resistive, power: 900 W}]}\n"
+          "  spare: {wires: {a: THHN 12}, runs: [C1]}\n"
+          "  old: {cable: NM-B 14-2, runs: [C3]}\n"
+          "leaks: [{at: Box, between: [L1.hot, spare.a], resistance: 300 kohm}]\n")
+          .findings();
+  const ConductorFindings& old = conductor(findings, "old.hot");
+  ASSERT_FALSE(old.places[0].contributions.empty());
+  EXPECT_LT(std::abs(old.places[0].open_circuit), 3.0);
+  EXPECT_FALSE(old.leakage);
+  EXPECT_TRUE(conductor(findings, "spare.a").leakage);
+}
+
 // A reading once named the whole wire as its reference beyond a cut, where only a piece of it is reached.
 TEST(Judge, ReferencesNamePiecesThatAreReachedThere) {
   const Solved model(
