@@ -111,7 +111,8 @@ class Judge {
   }
 
   // A reading scales all that adds up to it alike: the share of conductance is that of the open circuit.
-  // Of a voltage that looks dead the share means nothing: millivolts of a neutral's drop come by loss as well.
+  // Of a voltage that looks dead the share means nothing: millivolts of a neutral's drop come by loss as
+  // well.
   bool leaks(const PlaceFindings& at) const {
     Complex conductive = 0.0;
     Complex all = 0.0;
