@@ -1,6 +1,7 @@
 #include <fmt/format.h>
 
 #include <algorithm>
+#include <cctype>
 #include <cmath>
 #include <stdexcept>
 
@@ -69,7 +70,11 @@ std::string settles(const ConductorFindings& conductor, int width) {
                        volts_text(settle.expect, 3), limit_text(settle.treat_as_live_above));
   else
     text = "none of the model's instruments. ";
-  if (!settle.why.empty()) text += printable(settle.why) + (settle.why.back() == '.' ? " " : ". ");
+  if (!settle.why.empty()) {
+    std::string why = printable(settle.why);
+    why.front() = static_cast<char>(std::toupper(static_cast<unsigned char>(why.front())));
+    text += why + (why.back() == '.' ? " " : ". ");
+  }
   if (settle.instrument && settle.why.find("never proves") == std::string::npos)
     text += "A reading below this limit never proves the conductor dead.";
   return "\n" + paragraph("What settles it  ", text, width, 2) + felt(conductor, width);

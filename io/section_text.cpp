@@ -9,7 +9,7 @@ namespace io {
 namespace {
 
 constexpr int k_width = 100;  // columns
-constexpr int k_cell = 11;    // columns of one number
+constexpr int k_cell = 12;    // columns of one number, "-1.2345e-05" and a blank
 constexpr int k_per_block = (k_width - 6) / k_cell;
 
 /// A matrix with numbered rows and columns, as many columns side by side as fit.

@@ -269,6 +269,7 @@ TEST(SectionText, GivesUnitsAndNames) {
   engine::FieldMatrices field;
   field.capacitance = Eigen::MatrixXd::Identity(12, 12) * 1.25e-10;
   field.loss_capacitance = 0.01 * field.capacitance;
+  field.loss_capacitance(0, 1) = -1.2346e-19;
   field.external_inductance = Eigen::MatrixXd::Identity(12, 12) * 1e-7;
   const Eigen::MatrixXcd z = Eigen::MatrixXcd::Identity(12, 12) * std::complex<double>(5e-3, 1e-3);
   const std::vector<std::string> names(12, "spare-1.a");
@@ -277,6 +278,8 @@ TEST(SectionText, GivesUnitsAndNames) {
   for (const char* part : {"counted from enclosure", "Capacitance, pF/m", "125", "Series resistance, mohm/m",
                            "copper: 5.8e7 S/m", "    12  spare-1.a"})
     EXPECT_THAT(text, HasSubstr(part));
+  EXPECT_THAT(text,
+              HasSubstr(" -4.6543e-08 "));  // the longest number there is; it once touched its neighbour
 }
 
 TEST(SectionSvg, DrawsToScale) {
