@@ -14,13 +14,6 @@ enum class Condition { grounded, energised, through_load, grounded_through_load,
 enum class Appearance { live_like, unclear, dead_like };
 enum class Misleads { no, false_dead, false_live };
 
-/// Percentiles of a quantity over the draws, in the unit of the quantity.
-struct Band {
-  double p05 = 0.0;
-  double p50 = 0.0;
-  double p95 = 0.0;
-};
-
 /// What a needle instrument shows on one of its ranges.
 struct RangeReading {
   double full_scale = 0.0;  // V
@@ -32,7 +25,6 @@ struct Reading {
   std::string reference;                // "ground", "earth" or CIRCUIT.wire
   std::optional<double> range;          // V full scale, where the needle matters
   double volts = 0.0;                   // V RMS, the instrument's loading included
-  std::optional<Band> band;             // V, over the draws
   std::vector<RangeReading> on_ranges;  // ascending; empty for an instrument of one input
   std::optional<double> swapped;        // V with its leads swapped, between soft points where over 5 % apart
   std::optional<double> lead_in_air;    // V with its common lead touching nothing; readings to ground only
@@ -48,15 +40,6 @@ struct ContributionEntry {
   std::complex<double> volts;  // V RMS
 };
 
-/// The extremes of a voltage over the states of all circuits.
-struct Envelope {
-  double least = 0.0;              // V, over states with at least one aggressor on
-  double most_found = 0.0;         // V, of the state below
-  double most_bound = 0.0;         // V, proven: no state exceeds it
-  bool exact = false;              // the two agree within 1 %
-  std::vector<std::string> state;  // that gives most_found: "LP2-7 off and tied"
-};
-
 /// What a coupled voltage or current does to something or somebody.
 struct Effect {
   std::string what;   // "lamp_glows", "input_reads_on", "coil_stays_in", "device_trips", "person_feels", ...
@@ -70,23 +53,12 @@ struct Effect {
   std::optional<double> run_length;  // m, at which the margin is gone; null where length does not decide
 };
 
-/// An uncertain quantity and how much it moves the reading a conductor is ranked by.
-struct Influence {
-  std::string quantity;     // "clearance of C3", "permittivity of PVC"
-  double derivative = 0.0;  // V per standard deviation of the quantity, signed
-  double share = 0.0;       // of the variance, 0 to 1
-};
-
 struct PlaceFindings {
   std::string place;
-  std::string reference;                      // "ground" or "earth"
-  std::complex<double> open_circuit;          // V RMS, to the reference
-  std::complex<double> source_impedance;      // ohm, to the reference
-  double short_circuit = 0.0;                 // A
-  std::optional<Band> open_circuit_band;      // V, magnitudes over the draws
-  std::optional<Band> source_impedance_band;  // ohm, magnitudes
-  std::optional<Band> short_circuit_band;     // A
-  std::optional<Envelope> envelope;
+  std::string reference;                  // "ground" or "earth"
+  std::complex<double> open_circuit;      // V RMS, to the reference
+  std::complex<double> source_impedance;  // ohm, to the reference
+  double short_circuit = 0.0;             // A
   std::vector<Reading> readings;
   std::vector<ContributionEntry> contributions;  // empty for stiffly fed conductors
 };
@@ -116,14 +88,12 @@ struct ConductorFindings {
   std::optional<int> rank;
   Condition condition = Condition::floating;
   Misleads misleads = Misleads::no;
-  std::optional<double> probability;  // that it misleads, over the draws; null without
-  double expected_reading = 0.0;      // V, the one it is ranked by
-  bool not_predicted = false;         // shares a run with a drive's output
-  bool leakage = false;               // conductance carries over a tenth of what it reads somewhere
-  bool isolated_supply = false;       // belongs to a supply without a grounded pole
-  std::string supply;                 // of an energised conductor
+  double expected_reading = 0.0;  // V, the one it is ranked by
+  bool not_predicted = false;     // shares a run with a drive's output
+  bool leakage = false;           // conductance carries over a tenth of what it reads somewhere
+  bool isolated_supply = false;   // belongs to a supply without a grounded pole
+  std::string supply;             // of an energised conductor
   Settle settle;
-  std::vector<Influence> influences;  // largest share first; empty without draws
   std::vector<PlaceFindings> places;
 };
 
@@ -134,7 +104,6 @@ struct Findings {
   double frequency = 60.0;  // Hz
   std::string stage;
   unsigned seed = 1;
-  int draws = 0;
   std::vector<Effect> effects;                // those that can hurt first
   std::vector<ReceptaclePattern> patterns;    // of receptacle testers in the model's list
   std::vector<ConductorFindings> conductors;  // ranked first, by rank; then the others in model order

@@ -303,7 +303,7 @@ def shown_between(instrument, range_volts, ports, volts, node, other, reference)
     both points are soft; to ground, and where a point is stiff, it counts for nothing."""
     omega = ports.system.network.omega
     y = instrument_admittance(instrument, range_volts, omega)
-    common = mpc(0, omega * mpf(instrument["common_to_earth_F"]))
+    common = mpc(0, omega * mpf(instrument.get("common_to_earth_F", 0)))
     if common and reference not in ("ground", "earth"):
         z = ports.matrix(node, other)
         if min(abs(z[0, 0]), abs(z[1, 1])) >= SOFT_OHM:
