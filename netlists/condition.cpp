@@ -71,8 +71,6 @@ class Classifier {
 
   void find_poles() {
     components_[of_node_[0]].grounded = true;
-    const std::set<std::string> floating(lowered_.floating_supplies.begin(),
-                                         lowered_.floating_supplies.end());
     for (const LivePole& pole : lowered_.poles) {
       Component& component = components_[of_node_[pole.node]];
       if (pole.grounded) {
@@ -80,7 +78,7 @@ class Classifier {
       } else {
         component.poles.push_back(&pole);
       }
-      frame_[pole.supply] = floating.count(pole.supply) ? pole.supply : k_earth;
+      frame_[pole.supply] = lowered_.floating_supplies.count(pole.supply) ? pole.supply : k_earth;
     }
     for (const Component& component : components_) {
       if (component.grounded && !component.poles.empty() && frame_[component.poles[0]->supply] == k_earth) {

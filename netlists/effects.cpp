@@ -184,9 +184,8 @@ class EffectFinder {
     std::map<std::string, std::vector<Touched>> isolated;
     for (std::size_t c = 0; c < lowered_.conductors.size(); ++c) {
       const Condition condition = conditions_.of_conductor[c];
-      const std::vector<std::string>& floating = lowered_.floating_supplies;
-      const bool leg = condition == Condition::energised &&
-                       std::find(floating.begin(), floating.end(), conditions_.supply[c]) != floating.end();
+      const bool leg =
+          condition == Condition::energised && lowered_.floating_supplies.count(conditions_.supply[c]) > 0;
       if (by_wire(condition) && !leg) continue;
       for (const Access& access : lowered_.conductors[c].access) {
         if (!undetermined_.count(access.node))
@@ -338,9 +337,8 @@ std::vector<Effect> effects(const Building& building, const Lowered& lowered, co
                             const engine::SolvedNetwork& solved) {
   std::vector<Effect> found = EffectFinder(building, lowered, conditions, solved).find();
   for (const LivePole& pole : lowered.poles) {
-    const std::vector<std::string>& floating = lowered.floating_supplies;
-    if (std::find(floating.begin(), floating.end(), pole.supply) == floating.end()) continue;
-    keep_larger(found, while_faulted(building, lowered, conditions, pole));
+    if (lowered.floating_supplies.count(pole.supply))
+      keep_larger(found, while_faulted(building, lowered, conditions, pole));
   }
   put_in_order(found);
   return found;

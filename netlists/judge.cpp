@@ -99,9 +99,8 @@ class Judge {
     found.condition = conditions_.of_conductor[index];
     found.not_predicted = path.near_drive;
     found.supply = conditions_.supply[index];
-    const std::vector<std::string>& floating = lowered_.floating_supplies;
-    found.isolated_supply = found.condition == Condition::energised &&
-                            std::find(floating.begin(), floating.end(), found.supply) != floating.end();
+    found.isolated_supply =
+        found.condition == Condition::energised && lowered_.floating_supplies.count(found.supply) > 0;
     for (const Access& access : path.access) {
       if (determined_[access.node]) found.places.push_back(place(index, access, found));
     }

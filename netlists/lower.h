@@ -2,6 +2,7 @@
 #pragma once
 
 #include <map>
+#include <set>
 #include <string>
 #include <vector>
 
@@ -94,8 +95,8 @@ struct Lowered {
   std::vector<Connection> connections;                    // within conductors, through contacts, bonds, loads
   std::vector<LoweredLoad> loads;                         // those that are not off
   std::vector<LivePole> poles;
-  std::vector<std::string> floating_supplies;  // names of supplies without a grounded pole
-  std::vector<std::string> states;             // every breaker and switch state assumed, in words
+  std::set<std::string> floating_supplies;  // names of supplies without a grounded pole
+  std::vector<std::string> states;          // every breaker and switch state assumed, in words
   std::vector<std::string> assumptions;
   std::vector<std::string> warnings;
 };

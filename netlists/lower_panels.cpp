@@ -54,7 +54,7 @@ void Lowering::join_supplies() {
     if (!system) throw std::invalid_argument("supply '" + supply.name.text + "': unknown system");
     const std::string grounded = grounded_pole(building_, supply);
     if (!grounded.empty()) joints_.join(joints_.point(terminal(supply, grounded)), 0);
-    if (floats(building_, supply)) out_.floating_supplies.push_back(supply.name.text);
+    if (floats(building_, supply)) out_.floating_supplies.insert(supply.name.text);
   }
 }
 

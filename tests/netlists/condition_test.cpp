@@ -39,7 +39,7 @@ class Wires {
     return *this;
   }
   Wires& floating_supply(const std::string& name) {
-    lowered_.floating_supplies.push_back(name);
+    lowered_.floating_supplies.insert(name);
     return *this;
   }
   Condition of(const std::string& id) const {

@@ -209,14 +209,7 @@ TEST(Effects, AFloatingChassisSitsAtHalfVoltage) {
 // Residual current goes with the length of the live wire along an earthed plane; more than 4 mA trips.
 TEST(Effects, AResidualCurrentDeviceSeesTheCablesCharge) {
   const Solved model(
-      "supplies: {T1: {system: 120/240}}\npanels: {LP: {supply: T1}}\n"
-      "runs: {C1: {from: LP, to: Pump, length: 300 m, raceway: EMT 1/2}}\n"
-      "circuits:\n"
-      "  L1:\n"
-      "    panel: LP\n"
-      "    slot: 1\n"
-      "    wires: {hot: THHN 12, neutral: THHN 12, ground: THHN 12}\n"
-      "    runs: [C1]\n"
+      one_circuit("300 m", "EMT 1/2", "Pump") +
       "    loads: [{at: Pump, between: [hot, neutral], kind: ground_fault_receptacle, state: standby}]\n");
   const Findings findings = model.findings();
   const Effect* trip = effect(findings, "device_trips", "L1");

@@ -100,14 +100,7 @@ TEST(Receptacle, PatternsHaveTheirMeaning) {
 }
 
 std::string receptacle(const std::string& more) {
-  return "supplies: {T1: {system: 120/240}}\npanels: {LP: {supply: T1}}\n"
-         "runs: {C1: {from: LP, to: Room, length: 20 m, raceway: none}}\n"
-         "circuits:\n"
-         "  L1:\n"
-         "    panel: LP\n"
-         "    slot: 1\n"
-         "    wires: {hot: THHN 12, neutral: THHN 12, ground: THHN 12}\n"
-         "    runs: [C1]\n"
+  return one_circuit("20 m", "none") +
          "    loads: []\n"
          "instruments: [dmm, receptacle_tester_led]\n" +
          more;
@@ -128,16 +121,7 @@ TEST(Receptacle, ReadsTheFaultsOfAModel) {
 // ---- conditions that lie both ways ---------------------------------------------------------------------
 
 std::string spare(const std::string& length, const std::string& more) {
-  return "supplies: {T1: {system: 120/240}}\npanels: {LP: {supply: T1}}\n"
-         "runs: {C1: {from: LP, to: Room, length: " +
-         length +
-         ", raceway: none}}\n"
-         "circuits:\n"
-         "  L1:\n"
-         "    panel: LP\n"
-         "    slot: 1\n"
-         "    wires: {hot: THHN 12, neutral: THHN 12, ground: THHN 12}\n"
-         "    runs: [C1]\n"
+  return one_circuit(length, "none") +
          "    loads: []\n"
          "  spare: {wires: {a: THHN 12, b: THHN 12}, runs: [C1]}\n" +
          more;

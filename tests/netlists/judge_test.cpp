@@ -13,16 +13,8 @@ namespace {
 using ::testing::HasSubstr;
 
 std::string open_neutral(const std::string& load) {
-  return "supplies: {T1: {system: 120/240}}\npanels: {LP: {supply: T1}}\n"
-         "runs: {C1: {from: LP, to: Room, length: 25 m, raceway: EMT 1/2}}\n"
-         "circuits:\n"
-         "  L1:\n"
-         "    panel: LP\n"
-         "    slot: 1\n"
-         "    wires: {hot: THHN 12, neutral: THHN 12, ground: THHN 12}\n"
-         "    runs: [C1]\n"
-         "    loads: [{at: Room, between: [hot, neutral], kind: resistive, " +
-         load +
+  return one_circuit("25 m", "EMT 1/2") +
+         "    loads: [{at: Room, between: [hot, neutral], kind: resistive, " + load +
          "}]\n"
          "cuts: [{at: LP, wire: L1.neutral, side: C1}]\n";
 }

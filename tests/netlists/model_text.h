@@ -22,6 +22,22 @@ inline Building building_of(const std::string& text) {
   return file.building;
 }
 
+/// The head of a model: circuit L1 of hot, neutral and ground at slot 1 of panel LP, 120/240 V, on run C1 to
+/// `place`. The circuit's further keys follow, indented by four.
+inline std::string one_circuit(const std::string& length, const std::string& raceway,
+                               const std::string& place = "Room") {
+  return "supplies: {T1: {system: 120/240}}\npanels: {LP: {supply: T1}}\n"
+         "runs: {C1: {from: LP, to: " +
+         place + ", length: " + length + ", raceway: " + raceway +
+         "}}\n"
+         "circuits:\n"
+         "  L1:\n"
+         "    panel: LP\n"
+         "    slot: 1\n"
+         "    wires: {hot: THHN 12, neutral: THHN 12, ground: THHN 12}\n"
+         "    runs: [C1]\n";
+}
+
 /// A model solved in its first stage, with seed 1.
 struct Solved {
   Building building;
