@@ -30,6 +30,12 @@ std::string amount(double value, const std::string& unit) {
 }
 
 std::string line(const Effect& effect, int width) {
+  return paragraph("  ", effect_in_words(effect) + ". Threshold: " + printable(effect.source) + ".", width, 4);
+}
+
+}  // namespace
+
+std::string effect_in_words(const Effect& effect) {
   const std::string value = amount(effect.value, effect.unit);
   const std::string threshold = amount(effect.threshold, effect.unit);
   std::string text = effect.what == "person_feels"
@@ -38,10 +44,8 @@ std::string line(const Effect& effect, int width) {
                          : fmt::format("{}, {}: {}: {}, from {} on it may", printable(effect.where),
                                        printable(effect.subject), in_words(effect), value, threshold);
   if (effect.run_length) text += fmt::format("; reached at a run of {:.3g} m", *effect.run_length);
-  return paragraph("  ", text + ". Threshold: " + printable(effect.source) + ".", width, 4);
+  return text;
 }
-
-}  // namespace
 
 std::string hurting_text(const Findings& findings, int width) {
   std::string out;

@@ -7,6 +7,9 @@
 
 namespace io {
 
+/// One effect in words, without its threshold's source and the full stop: "JB-6: 0.23 mA through ...".
+std::string effect_in_words(const netlists::Effect& effect);
+
 /// Currents that people feel, under a heading of their own; "" where there are none.
 std::string hurting_text(const netlists::Findings& findings, int width);
 

@@ -1,7 +1,6 @@
 #include <fmt/format.h>
 
 #include <algorithm>
-#include <cctype>
 #include <cmath>
 #include <stdexcept>
 
@@ -63,21 +62,7 @@ std::string felt(const ConductorFindings& conductor, int width) {
 }
 
 std::string settles(const ConductorFindings& conductor, int width) {
-  const netlists::Settle& settle = conductor.settle;
-  std::string text;
-  if (settle.instrument)
-    text = fmt::format("{}: expect {}; treat as live above {}. ", *settle.instrument,
-                       volts_text(settle.expect, 3), limit_text(settle.treat_as_live_above));
-  else
-    text = "none of the model's instruments. ";
-  if (!settle.why.empty()) {
-    std::string why = printable(settle.why);
-    why.front() = static_cast<char>(std::toupper(static_cast<unsigned char>(why.front())));
-    text += why + (why.back() == '.' ? " " : ". ");
-  }
-  if (settle.instrument && settle.why.find("never proves") == std::string::npos)
-    text += "A reading below this limit never proves the conductor dead.";
-  return "\n" + paragraph("What settles it  ", text, width, 2) + felt(conductor, width);
+  return "\n" + paragraph("What settles it  ", settle_in_words(conductor), width, 2) + felt(conductor, width);
 }
 
 std::string thevenin(const PlaceFindings& place, int width) {
@@ -147,26 +132,9 @@ std::string contributions(const PlaceFindings& place, int width) {
   return "\n  Who puts it there\n" + table.indented(2);
 }
 
-/// What else the instruments may show: on other ranges, with leads swapped, with one lead in the air.
 std::string remarks(const PlaceFindings& place, int width) {
   std::string out;
-  for (const Reading& reading : place.readings) {
-    const std::string what = printable(reading.instrument) + " to " + printable(reading.reference) + ": ";
-    if (reading.swapped)
-      out += paragraph("  ",
-                       fmt::format("{}{} with its common lead on {}, {} with the leads swapped.", what,
-                                   volts_text(reading.volts, 3), printable(reading.reference),
-                                   volts_text(*reading.swapped, 3)),
-                       width, 4);
-    if (reading.reference != place.reference || reading.on_ranges.size() < 2) continue;
-    std::string ranges;
-    for (const auto& range : reading.on_ranges)
-      ranges += fmt::format("{}{} on {}", ranges.empty() ? "" : ", ",
-                            range.volts > range.full_scale ? "off scale" : volts_text(range.volts, 3),
-                            volts_text(range.full_scale, 2));
-    out += paragraph("  ", what + ranges + "; a person settles on " + volts_text(*reading.range, 2) + ".",
-                     width, 4);
-  }
+  for (const std::string& remark : reading_remarks(place)) out += paragraph("  ", remark, width, 4);
   return out;
 }
 

@@ -3,6 +3,7 @@
 #include <fmt/format.h>
 
 #include <algorithm>
+#include <cctype>
 #include <cmath>
 
 #include "io/text_layout.h"
@@ -131,29 +132,94 @@ std::string misleads_in_words(const ConductorFindings& conductor) {
   return "not flagged";
 }
 
-std::string sheet_head(const Findings& findings, const std::string& date, int width) {
-  const std::string title = findings.title.empty() ? "untitled model" : findings.title;
+std::string small_volts(double volts) { return volts < 0.01 ? "<0.01 V" : volts_text(volts); }
+
+std::string reading_text(const Focus& at, const std::string& instrument) {
+  double least = 0.0, most = 0.0;
+  bool any = false;
+  for (const Reading& reading : at.place->readings) {
+    if (reading.instrument != instrument || reading.reference != at.reference) continue;
+    least = any ? std::min(least, reading.volts) : reading.volts;
+    most = any ? std::max(most, reading.volts) : reading.volts;
+    any = true;
+  }
+  if (!any) return "-";
+  const std::string low = small_volts(least), high = small_volts(most);
+  return low == high ? high : low + " to " + high;
+}
+
+std::string settle_in_words(const ConductorFindings& conductor) {
+  const netlists::Settle& settle = conductor.settle;
+  std::string text;
+  if (settle.instrument)
+    text = fmt::format("{}: expect {}; treat as live above {}. ", *settle.instrument,
+                       volts_text(settle.expect, 3), limit_text(settle.treat_as_live_above));
+  else
+    text = "none of the model's instruments. ";
+  if (!settle.why.empty()) {
+    std::string why = printable(settle.why);
+    why.front() = static_cast<char>(std::toupper(static_cast<unsigned char>(why.front())));
+    text += why + (why.back() == '.' ? " " : ". ");
+  }
+  if (settle.instrument && settle.why.find("never proves") == std::string::npos)
+    text += "A reading below this limit never proves the conductor dead.";
+  return text;
+}
+
+std::vector<std::string> reading_remarks(const PlaceFindings& place) {
+  std::vector<std::string> out;
+  for (const Reading& reading : place.readings) {
+    const std::string what = printable(reading.instrument) + " to " + printable(reading.reference) + ": ";
+    if (reading.swapped)
+      out.push_back(fmt::format("{}{} with its common lead on {}, {} with the leads swapped.", what,
+                                volts_text(reading.volts, 3), printable(reading.reference),
+                                volts_text(*reading.swapped, 3)));
+    if (reading.reference != place.reference || reading.on_ranges.size() < 2) continue;
+    std::string ranges;
+    for (const auto& range : reading.on_ranges)
+      ranges += fmt::format("{}{} on {}", ranges.empty() ? "" : ", ",
+                            range.volts > range.full_scale ? "off scale" : volts_text(range.volts, 3),
+                            volts_text(range.full_scale, 2));
+    out.push_back(what + ranges + "; a person settles on " + volts_text(*reading.range, 2) + ".");
+  }
+  return out;
+}
+
+std::string sheet_title(const Findings& findings) {
+  return findings.title.empty() ? "untitled model" : findings.title;
+}
+
+std::string sheet_facts(const Findings& findings, const std::string& date) {
   std::string facts = fmt::format("Stage: {}. {} Hz.", findings.stage.empty() ? "as drawn" : findings.stage,
                                   fmt::format("{:g}", findings.frequency));
   if (!findings.model_sha256.empty()) facts += " Model " + findings.model_sha256.substr(0, 12) + ".";
   if (!date.empty()) facts += " " + date + ".";
   if (!findings.program_version.empty()) facts += " idlewire " + findings.program_version + ".";
-  return paragraph("", printable(title), width) + paragraph("", printable(facts), width) + "\n" +
+  return facts;
+}
+
+std::string states_in_words(const Findings& findings) {
+  std::string states;
+  for (const std::string& state : findings.states) states += (states.empty() ? "" : "; ") + state;
+  return states.empty() ? "none in this model" : states;
+}
+
+std::string sheet_warning() {
+  return "A reading that agrees with this sheet proves nothing. "
+         "Void once anything is switched or changed.";
+}
+
+std::string sheet_head(const Findings& findings, const std::string& date, int width) {
+  return paragraph("", printable(sheet_title(findings)), width) +
+         paragraph("", printable(sheet_facts(findings, date)), width) + "\n" +
          paragraph("CAUTION  ", netlists::caution(), width);
 }
 
 std::string sheet_foot(const Findings& findings, int width) {
-  std::string states;
-  for (const std::string& state : findings.states) states += (states.empty() ? "" : "; ") + state;
   std::string out = list("Warnings", findings.warnings, width);
-  out += "\nBreakers and switches as assumed\n" +
-         paragraph("  ", states.empty() ? "none in this model" : printable(states), width);
+  out += "\nBreakers and switches as assumed\n" + paragraph("  ", printable(states_in_words(findings)), width);
   out += list("Assumptions", findings.assumptions, width);
-  out += "\n" + paragraph("",
-                          "A reading that agrees with this sheet proves nothing. "
-                          "Void once anything is switched or changed.",
-                          width);
-  return out;
+  return out + "\n" + paragraph("", sheet_warning(), width);
 }
 
 }  // namespace io

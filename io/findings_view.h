@@ -41,7 +41,32 @@ std::string condition_in_words(const netlists::ConductorFindings& conductor);
 /// "false_live" in words; "not flagged" where nothing misleads.
 std::string misleads_in_words(const netlists::ConductorFindings& conductor);
 
-/// Title, stage, frequency, model and date in one line of words, then the caution.
+/// What `instrument` reads at the row's place against its reference: "61 V", "12 to 33 V" where more
+/// than one range was used, "-" where nothing.
+std::string reading_text(const Focus& at, const std::string& instrument);
+
+/// Volts in a table: what no instrument shows is not spelt out, "<0.01 V".
+std::string small_volts(double volts);
+
+/// What settles a conductor, whole sentences; that a reading below a limit proves nothing among them.
+std::string settle_in_words(const netlists::ConductorFindings& conductor);
+
+/// What else the instruments may show at a place: on other ranges, with leads swapped. One sentence each.
+std::vector<std::string> reading_remarks(const netlists::PlaceFindings& place);
+
+/// The title, or what stands for it; may hold anything the model's file held.
+std::string sheet_title(const netlists::Findings& findings);
+
+/// Stage, frequency, model, date and program in one line of words.
+std::string sheet_facts(const netlists::Findings& findings, const std::string& date);
+
+/// Every breaker and switch state assumed, in one line; "none in this model".
+std::string states_in_words(const netlists::Findings& findings);
+
+/// What a sheet of expected readings says of itself, in two sentences.
+std::string sheet_warning();
+
+/// Title and facts, then the caution, for a terminal.
 std::string sheet_head(const netlists::Findings& findings, const std::string& date, int width);
 
 /// States assumed, assumptions, warnings, and what a sheet of expected readings must say of itself.

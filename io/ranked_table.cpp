@@ -21,24 +21,6 @@ using netlists::Reading;
 constexpr int k_effects_shown = 8;
 constexpr int k_indent = 6;  // columns, of the lines below a row
 
-/// Volts in the table: what no instrument shows is not spelt out.
-std::string small(double volts) { return volts < 0.01 ? "<0.01 V" : volts_text(volts); }
-
-/// What `instrument` reads at the row's place against its reference: "61 V", "12 to 33 V" where more
-/// than one range was used, "-" where nothing.
-std::string reading_text(const Focus& at, const std::string& instrument) {
-  double least = 0.0, most = 0.0;
-  bool any = false;
-  for (const Reading& reading : at.place->readings) {
-    if (reading.instrument != instrument || reading.reference != at.reference) continue;
-    least = any ? std::min(least, reading.volts) : reading.volts;
-    most = any ? std::max(most, reading.volts) : reading.volts;
-    any = true;
-  }
-  if (!any) return "-";
-  return small(least) == small(most) ? small(most) : small(least) + " to " + small(most);
-}
-
 /// The mark of a row: its rank, or "-".
 std::string mark(const ConductorFindings& conductor) {
   return conductor.rank ? std::to_string(*conductor.rank) : "-";
@@ -77,7 +59,7 @@ std::string aggressor_text(const PlaceFindings& place) {
   const netlists::ContributionEntry* entry = main_aggressor(place);
   if (entry == nullptr) return "";
   return fmt::format(" Mainly from {} ({}, {} of {}).", printable(entry->from), entry->path,
-                     small(std::abs(entry->volts)), small(std::abs(place.open_circuit)));
+                     small_volts(std::abs(entry->volts)), small_volts(std::abs(place.open_circuit)));
 }
 
 /// "dmm 61 V, low_impedance 0.35 V": what each instrument reads at the place against the reference.
@@ -104,7 +86,7 @@ std::string settle_text(const ConductorFindings& conductor, const Focus& at,
                ? " Treat as live; no reading here settles it: see explain."
                : " None of these instruments settles it: see explain.";
   return fmt::format(" Settled by {}: expect {}, treat as live above {}.", *conductor.settle.instrument,
-                     small(conductor.settle.expect), limit_text(conductor.settle.treat_as_live_above));
+                     small_volts(conductor.settle.expect), limit_text(conductor.settle.treat_as_live_above));
 }
 
 std::string indicators_text(const Focus& at) {

@@ -12,8 +12,7 @@ namespace {
 
 constexpr int k_rows = 9;
 constexpr int k_label = 10;        // columns left of the axis
-constexpr double k_first = 2.0;    // decades: 100 ohm
-constexpr double k_decades = 6.0;  // to 100 Mohm
+constexpr double k_decades = 6.0;  // from k_curve_first to k_curve_last
 
 struct Canvas {
   int columns;
@@ -25,7 +24,7 @@ struct Canvas {
     return static_cast<int>(std::lround((1.0 - share) * (k_rows - 1)));
   }
   int column_of(double ohms) const {
-    const double share = std::clamp((std::log10(ohms) - k_first) / k_decades, 0.0, 1.0);
+    const double share = std::clamp(std::log10(ohms / k_curve_first) / k_decades, 0.0, 1.0);
     return static_cast<int>(std::lround(share * (columns - 1)));
   }
   void put(int row, int column, char c) {
@@ -80,16 +79,26 @@ std::vector<CurveMark> curve_marks(const netlists::Findings& findings, const net
   return marks;
 }
 
+std::vector<CurvePoint> curve_points(std::complex<double> open_circuit, std::complex<double> source_impedance,
+                                     int count) {
+  const double volts = std::abs(open_circuit);
+  if (!std::isfinite(volts) || volts == 0.0 || !std::isfinite(std::abs(source_impedance))) return {};
+  std::vector<CurvePoint> points;
+  for (int k = 0; k < count; ++k) {
+    const double ohms = k_curve_first * std::pow(k_curve_last / k_curve_first, k / (count - 1.0));
+    points.push_back({ohms, std::abs(open_circuit * ohms / (ohms + source_impedance))});
+  }
+  return points;
+}
+
 std::string reading_curve(std::complex<double> open_circuit, std::complex<double> source_impedance,
                           const std::vector<CurveMark>& marks, int width) {
-  const double volts = std::abs(open_circuit);
-  if (!std::isfinite(volts) || volts == 0.0 || !std::isfinite(std::abs(source_impedance))) return "";
-  Canvas canvas{std::clamp(width - k_label, 37, 73), volts};
+  Canvas canvas{std::clamp(width - k_label, 37, 73), std::abs(open_circuit)};
+  const std::vector<CurvePoint> points = curve_points(open_circuit, source_impedance, canvas.columns);
+  if (points.empty()) return "";
   canvas.rows.assign(k_rows, std::string(static_cast<std::size_t>(canvas.columns), ' '));
-  for (int c = 0; c < canvas.columns; ++c) {
-    const double ohms = std::pow(10.0, k_first + k_decades * c / (canvas.columns - 1));
-    canvas.put(canvas.row_of(std::abs(open_circuit * ohms / (ohms + source_impedance))), c, '.');
-  }
+  for (const CurvePoint& point : points)
+    canvas.put(canvas.row_of(point.volts), canvas.column_of(point.resistance), '.');
   std::string legend;
   for (std::size_t k = 0; k < marks.size(); ++k) {
     if (std::isfinite(marks[k].volts))

@@ -20,6 +20,21 @@ struct CurveMark {
 /// range they read on.
 std::vector<CurveMark> curve_marks(const netlists::Findings& findings, const netlists::PlaceFindings& place);
 
+/// A reading that an instrument of so much resistance and nothing else would show.
+struct CurvePoint {
+  double resistance = 0.0;  // ohm
+  double volts = 0.0;       // V RMS
+};
+
+/// The curve's axis, ohm: what people measure with lies between.
+inline constexpr double k_curve_first = 1e2;
+inline constexpr double k_curve_last = 1e8;
+
+/// |V R / (R + Z)| at `count` resistances (2 or more), evenly spaced in their logarithm from k_curve_first
+/// to k_curve_last. Empty where V or Z is not finite or V is zero.
+std::vector<CurvePoint> curve_points(std::complex<double> open_circuit, std::complex<double> source_impedance,
+                                     int count);
+
 /// |V R / (R + Z)| for R from 100 ohm to 100 Mohm on a logarithmic axis, as text of at most `width`
 /// columns, with the marks as letters and a legend. "" where V or Z is not finite or V is zero.
 std::string reading_curve(std::complex<double> open_circuit, std::complex<double> source_impedance,
