@@ -48,6 +48,11 @@ std::vector<Command> add_commands(CLI::App& app, CommandOptions& options) {
       ->add_option("--csv", options.csv,
                    "Also write one row a reading; - is standard output, without the table")
       ->type_name("FILE");
+  predict
+      ->add_option(
+          "--html", options.html,
+          "Also write the report, one page with all pictures; - is standard output, without the table")
+      ->type_name("FILE");
   predict->add_option("--gate", options.gate, "Exit with 1 if such a conductor is ranked")
       ->check(CLI::IsMember({"false_dead", "misleading"}))
       ->type_name("KIND");

@@ -10,6 +10,7 @@
 #include "io/catalogue_file.h"
 #include "io/catalogue_text.h"
 #include "io/check_report.h"
+#include "io/page.h"
 #include "io/section_file.h"
 #include "io/terminal.h"
 #include "io/text_layout.h"
@@ -32,7 +33,7 @@ void say(const std::string& text) {
 /// Where results go is looked at before anything is computed.
 void require_writable(const CommandOptions& options) {
   int to_standard_output = 0;
-  for (const std::string& path : {options.json, options.csv, options.svg}) {
+  for (const std::string& path : {options.json, options.csv, options.html, options.svg}) {
     const std::string why = path.empty() ? "" : unwritable(path);
     if (!why.empty()) throw InputError(why);
     if (path == "-") ++to_standard_output;
@@ -82,14 +83,23 @@ engine::SolvedNetwork solved(const netlists::Lowered& lowered) {
   return network;
 }
 
-Findings findings_of(const CommandOptions& options) {
+/// The findings with what they were found from.
+struct Predicted {
+  Building building;  // in the stage
+  netlists::Lowered network;
+  Findings findings;
+};
+
+Predicted predicted(const CommandOptions& options) {
+  Predicted out;
   const Building building = read_building(options);
-  const netlists::Lowered network = lowered(building, options);
-  Findings findings = netlists::judge(building, network, solved(network));
-  findings.program_version = IDLEWIRE_VERSION;
-  findings.stage = netlists::stage_name(building, options.stage);
-  findings.seed = options.seed;
-  return findings;
+  out.network = lowered(building, options);
+  out.building = netlists::in_stage(building, options.stage);
+  out.findings = netlists::judge(building, out.network, solved(out.network));
+  out.findings.program_version = IDLEWIRE_VERSION;
+  out.findings.stage = netlists::stage_name(building, options.stage);
+  out.findings.seed = options.seed;
+  return out;
 }
 
 void say_warnings(const std::vector<std::string>& warnings, const CommandOptions& options) {
@@ -169,10 +179,13 @@ int check_command(const CommandOptions& options) {
 
 int predict_command(const CommandOptions& options) {
   require_writable(options);
-  const Findings findings = findings_of(options);
+  const Predicted all = predicted(options);
+  const Findings& findings = all.findings;
+  if (!options.html.empty())
+    write_whole(options.html, report_page({findings, all.building, all.network, today()}));
   if (!options.json.empty()) write_whole(options.json, findings_json(findings));
   if (!options.csv.empty()) write_whole(options.csv, findings_csv(findings));
-  if (options.json == "-" || options.csv == "-")
+  if (options.json == "-" || options.csv == "-" || options.html == "-")
     say_warnings(findings.warnings, options);
   else
     write_whole("-", ranked_table(findings, output_width(), output_colour(), today()));
@@ -180,7 +193,7 @@ int predict_command(const CommandOptions& options) {
 }
 
 int explain_command(const CommandOptions& options) {
-  const Findings findings = findings_of(options);
+  const Findings findings = predicted(options).findings;
   std::string text;
   try {
     text = explanation(findings, options.conductor, output_width(), today());

@@ -30,7 +30,8 @@ std::string amount(double value, const std::string& unit) {
 }
 
 std::string line(const Effect& effect, int width) {
-  return paragraph("  ", effect_in_words(effect) + ". Threshold: " + printable(effect.source) + ".", width, 4);
+  return paragraph("  ", effect_in_words(effect) + ". Threshold: " + printable(effect.source) + ".", width,
+                   4);
 }
 
 }  // namespace

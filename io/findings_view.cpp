@@ -217,7 +217,8 @@ std::string sheet_head(const Findings& findings, const std::string& date, int wi
 
 std::string sheet_foot(const Findings& findings, int width) {
   std::string out = list("Warnings", findings.warnings, width);
-  out += "\nBreakers and switches as assumed\n" + paragraph("  ", printable(states_in_words(findings)), width);
+  out +=
+      "\nBreakers and switches as assumed\n" + paragraph("  ", printable(states_in_words(findings)), width);
   out += list("Assumptions", findings.assumptions, width);
   return out + "\n" + paragraph("", sheet_warning(), width);
 }

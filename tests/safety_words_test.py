@@ -14,7 +14,7 @@ import unittest
 import tree
 
 FOLDERS = ("io", "netlists", "examples")
-KINDS = (".cpp", ".h", ".in", ".yaml", ".yml", ".md", ".txt", ".svg")
+KINDS = (".cpp", ".h", ".in", ".yaml", ".yml", ".md", ".txt", ".svg", ".css", ".js")
 OBJECT = r"(it|them|this|that|each|every|both|all|any|the (conductor|wire|spare|leg|core|line|hot|other)s?)\b"
 INSULATION_TEST = r"once proved dead, isolated at both ends and with equipment disconnected"
 DENIED = r"\b(no|not|never|nothing|none|nobody|nor|cannot)\b"
@@ -95,6 +95,8 @@ class SafetyWords(unittest.TestCase):
             if path.parent.name.startswith("05-"):
                 continue  # as many words as the others, ten times as long
             texts[path.name] = output("predict", str(path))
+            page = output("predict", str(path), "--quiet", "--html", "-")
+            texts[path.name + ", the page"] = re.sub(r"<(style|script)>.*?</\1>|<[^>]*>", " ", page, flags=re.S)
             ranked = json.loads(output("predict", str(path), "--quiet", "--json", "-"))["conductors"]
             for conductor in ranked[:2] + ranked[-2:]:
                 texts[conductor["id"]] = output("explain", str(path), conductor["id"])

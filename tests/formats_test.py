@@ -1,0 +1,162 @@
+"""Every format says the same: the figures of --html are those of --json, and each is found again.
+
+The words for figures are made anew here, so that the page is not held against its own writer.
+"""
+
+import html.parser
+import json
+import math
+import os
+import pathlib
+import re
+import subprocess
+import tempfile
+import unittest
+
+import tree
+
+MODELS = ("03-isolated-supply/equal", "04-open-neutral/model", "06-plant-control/model")
+
+
+def rounded(value, digits=2):
+    before = math.floor(math.log10(abs(value))) + 1 if value else 0
+    return f"{value:.{max(0, digits - before)}f}"
+
+
+def volts(value):
+    if value < 0.01:
+        return "<0.01 V"
+    return f"{rounded(value)} V" if value < 9995 else f"{rounded(value / 1e3)} kV"
+
+
+def in_units(value, units):
+    for size, name in units:
+        if value >= 0.9995 * size:
+            return f"{rounded(value / size)} {name}"
+    return f"{rounded(value / units[-1][0])} {units[-1][1]}"
+
+
+def ohms(value):
+    if value == 0:
+        return "0 ohm"
+    return in_units(value, [(1e9, "Gohm"), (1e6, "Mohm"), (1e3, "kohm"), (1, "ohm"), (1e-3, "mohm")])
+
+
+class Page(html.parser.HTMLParser):
+    """The tables of a page by caption: rows of cell texts, the header first; and ids, links, requests."""
+
+    def __init__(self, text):
+        super().__init__(convert_charrefs=True)
+        self.tables, self.ids, self.links, self.fetches = {}, [], [], []
+        self.rows = self.caption = self.cell = None
+        self.feed(text)
+
+    def close_cell(self):
+        if self.cell is not None:
+            self.rows[-1].append(" ".join("".join(self.cell).split()))
+            self.cell = None
+
+    def handle_starttag(self, tag, attributes):
+        attributes = dict(attributes)
+        if "id" in attributes:
+            self.ids.append(attributes["id"])
+        if tag == "a":
+            self.links.append(attributes["href"])
+        self.fetches += [(tag, k) for k in attributes if k in ("src", "srcset", "data", "poster", "action")]
+        if tag == "link":
+            self.fetches.append((tag, "link"))
+        if tag == "table":
+            self.rows, self.caption = [], []
+        elif tag == "tr":
+            self.close_cell()
+            self.rows.append([])
+        elif tag in ("td", "th"):
+            self.close_cell()
+            self.cell = []
+        elif tag == "tbody":
+            self.close_cell()
+
+    def handle_endtag(self, tag):
+        if tag == "caption":
+            self.caption = "".join(self.caption)
+        elif tag == "table":
+            self.close_cell()
+            self.tables.setdefault(self.caption, []).append(self.rows)
+            self.rows = self.caption = None
+
+    def handle_data(self, data):
+        if self.cell is not None:
+            self.cell.append(data)
+        elif isinstance(self.caption, list):
+            self.caption.append(data)
+
+
+def table(page, start):
+    return next(rows for caption, tables in page.tables.items() for rows in tables if caption.startswith(start))
+
+
+class Formats(unittest.TestCase):
+    @classmethod
+    def setUpClass(cls):
+        cls.results = {}
+        with tempfile.TemporaryDirectory() as folder:
+            for name in MODELS:
+                page, findings = pathlib.Path(folder) / "page.html", pathlib.Path(folder) / "findings.json"
+                model = str(tree.TOP / "examples" / f"{name}.yaml")
+                subprocess.run([os.environ["IDLEWIRE"], "predict", model, "--quiet", "--html", str(page), "--json",
+                                str(findings)], check=True, capture_output=True)
+                cls.results[name] = (Page(page.read_text("utf-8")), json.loads(findings.read_text("utf-8")))
+
+    def test_the_ranked_list_says_what_the_json_says(self):
+        for name, (page, findings) in self.results.items():
+            head, *rows = table(page, "Conductors that are neither")
+            by_id = {c["id"]: c for c in findings["conductors"]}
+            ranked = [r[1] for r in rows if r[0] != "-"]
+            self.assertEqual(ranked, [c["id"] for c in findings["conductors"] if c["rank"]], name)
+            for row in rows:
+                cells = dict(zip(head, row))
+                conductor = by_id[cells["conductor"]]
+                verdict = conductor["misleads"]["how"]
+                self.assertEqual(cells["verdict"], "not flagged" if verdict == "no" else verdict)
+                where, _, reference = cells["at"].partition(" to ")
+                place = next(p for p in conductor["places"] if p["place"] == where)
+                self.assertEqual(cells["source impedance"], ohms(place["source_impedance"]["ohms"]), row)
+                for reading in place["readings"]:
+                    if reading["reference"] == (reference or "ground") and reading["instrument"] in cells:
+                        self.assertEqual(cells[reading["instrument"]], volts(reading["volts"]), row)
+
+    def test_every_conductor_of_the_json_is_in_the_page(self):
+        for name, (page, findings) in self.results.items():
+            listed = {r[1] for r in table(page, "Conductors that are neither")[1:]}
+            listed |= {r[0] for r in table(page, "Fed or grounded")[1:]}
+            self.assertEqual(listed, {c["id"] for c in findings["conductors"]}, name)
+
+    def test_contributions_add_up(self):
+        for name, (page, findings) in self.results.items():
+            tables = [t for caption, ts in page.tables.items() if caption.startswith("Who puts it there") for t in ts]
+            self.assertTrue(tables, name)
+            for _, *rows in tables:
+                parts = [float(r[4].removesuffix(" V")) for r in rows[:-1]]
+                total = float(rows[-1][4].removesuffix(" V"))
+                # Each figure is rounded to 0.01 V.
+                self.assertAlmostEqual(sum(parts), total, delta=0.005 * (len(parts) + 1) + 1e-9)
+
+    def test_readings_stand_on_the_sheets(self):
+        for name, (page, findings) in self.results.items():
+            given = [cell for caption, ts in page.tables.items() if caption.startswith("Readings") for t in ts
+                     for row in t[1:] for cell in row[1:] if cell != "-"]
+            flagged = {r[1] for r in table(page, "Conductors that are neither")[1:]}
+            expected = [r["appearance"] for c in findings["conductors"] if c["id"] in flagged
+                        for p in c["places"] for r in p["readings"] if "indicates" not in r]
+            found = [re.search(r"live_like|dead_like|unclear", cell).group() for cell in given]
+            self.assertEqual(sorted(found), sorted(expected), name)
+
+    def test_links_lead_somewhere_and_nothing_is_fetched(self):
+        for name, (page, _) in self.results.items():
+            self.assertEqual(len(page.ids), len(set(page.ids)), name)
+            self.assertTrue(all(link.startswith("#") and link[1:] in page.ids for link in page.links), name)
+            self.assertEqual(page.fetches, [], name)
+
+
+if __name__ == "__main__":
+    unittest.main()

@@ -1,0 +1,184 @@
+#include "io/page.h"
+
+#include <gmock/gmock.h>
+#include <gtest/gtest.h>
+
+#include <regex>
+
+#include "io/check_report.h"
+#include "io/embedded_page.h"
+#include "io/page_figures.h"
+#include "io/page_html.h"
+#include "io/reading_curve.h"
+#include "netlists/judge.h"
+#include "tests/io/sample_findings.h"
+
+namespace {
+using testing::HasSubstr;
+using testing::Not;
+
+/// A page of findings made by hand, its building empty.
+std::string page_of(const netlists::Findings& findings, const netlists::Building& building = {},
+                    const netlists::Lowered& lowered = {}) {
+  return io::report_page({findings, building, lowered, "2024-05-17"});
+}
+
+std::size_t count(const std::string& text, const std::string& what) {
+  std::size_t n = 0;
+  for (std::size_t at = text.find(what); at != std::string::npos; at = text.find(what, at + 1)) ++n;
+  return n;
+}
+
+TEST(Html, EscapesWhatCouldBecomeMarkup) {
+  EXPECT_EQ(io::html("<b onclick=\"x\">&'"), "&lt;b onclick=&quot;x&quot;&gt;&amp;&#39;");
+  EXPECT_EQ(io::html("a\nb\x1b[2J"), "a?b?[2J");
+}
+
+// The digest of "abc" is that of FIPS 180-4's example, ba7816bf ... f20015ad, in base64.
+TEST(Html, PolicyHashIsTheStandardDigest) {
+  EXPECT_EQ(io::policy_hash("abc"), "ungWv48Bz+pBQUDeXa4iI7ADYaOWF3qctBD/YfIAFa0=");
+}
+
+TEST(ReportPage, StandsAloneUnderAStrictPolicy) {
+  const std::string page = page_of(tests::sample_findings());
+  EXPECT_THAT(page, HasSubstr("default-src 'none'; style-src 'sha256-" + io::policy_hash(io::page_style())));
+  EXPECT_THAT(page, HasSubstr("script-src 'sha256-" + io::policy_hash(io::page_script())));
+  EXPECT_THAT(page, Not(HasSubstr("unsafe")));
+  EXPECT_FALSE(std::regex_search(page, std::regex("https?:|src=|@import|style=\"|url\\([^#]")));
+}
+
+TEST(ReportPage, CarriesTheCautionAndWhatASheetMustSay) {
+  const std::string page = page_of(tests::sample_findings());
+  // At the top, at the foot and on the test sheet of each of the four places.
+  EXPECT_EQ(count(page, io::html(netlists::caution())), 6u);
+  EXPECT_EQ(
+      count(page, "A reading that agrees with this sheet proves nothing. Void once anything is switched"),
+      5u);
+  EXPECT_EQ(count(page, "Stage: As found. 60 Hz. Model 3f2a9c5e71d0. 2024-05-17. idlewire 0.1.0."), 4u);
+  EXPECT_GE(count(page, "breaker LP2-7 on; switch LP2-9.S1 open"), 5u);
+}
+
+TEST(ReportPage, TestSheetSaysThatNothingToGroundSettlesAnIsolatedLeg) {
+  const std::string page = page_of(tests::sample_findings());
+  const std::size_t from = page.find("Test sheet: Room 4");
+  const std::string sheet = page.substr(from, page.find("</article>", from) - from);
+  EXPECT_THAT(sheet, HasSubstr("isolated supply: no reading to ground settles it; treat as live"));
+  EXPECT_THAT(sheet, HasSubstr("ISO-1.second"));  // leg to leg has a row
+  EXPECT_THAT(sheet, Not(HasSubstr("above 1.4")));
+}
+
+TEST(ReportPage, LimitStandsWhereAnInstrumentSettles) {
+  const std::string page = page_of(tests::sample_findings());
+  EXPECT_THAT(page, HasSubstr("above 1.48 V on low_impedance"));
+}
+
+TEST(ReportPage, EveryLinkLeadsSomewhere) {
+  const std::string page = page_of(tests::sample_findings());
+  const std::regex link("href=#([a-z0-9-]+)");
+  int links = 0;
+  for (auto at = std::sregex_iterator(page.begin(), page.end(), link); at != std::sregex_iterator();
+       ++at, ++links)
+    EXPECT_TRUE(std::regex_search(page, std::regex("id=" + (*at)[1].str() + "[ >]"))) << (*at)[1];
+  EXPECT_GT(links, 15);
+}
+
+TEST(ReportPage, NothingOfTheModelBecomesMarkup) {
+  const std::string evil = "\"'><script>alert(1)</script><img src=x onerror=alert(2)>&";
+  netlists::Findings findings = tests::sample_findings();
+  findings.title = findings.stage = findings.program_version = findings.model_sha256 = evil;
+  findings.states = findings.assumptions = findings.warnings = {evil};
+  findings.effects = {{"lamp_glows", evil, evil, 1.0, 2.0, "V", evil, true, {}}};
+  findings.patterns = {{evil, evil, evil, 1, 2, 3, evil, evil}};
+  for (auto& instrument : findings.instruments) instrument.name += evil;
+  for (auto& conductor : findings.conductors) {
+    conductor.id += evil;
+    conductor.supply = evil;
+    conductor.settle.why = evil;
+    if (conductor.settle.instrument) conductor.settle.instrument = evil;
+    for (auto& place : conductor.places) {
+      place.place += evil;
+      for (auto& reading : place.readings) {
+        reading.instrument += evil;
+        if (reading.reference != "ground") reading.reference += evil;
+      }
+      for (auto& entry : place.contributions) entry.from += evil;
+    }
+  }
+  netlists::Building building;
+  building.file = evil;
+  building.panels.push_back({{"P" + evil, {}}, {}, {}});
+  netlists::Run run;
+  run.name = {"R" + evil, {}};
+  run.from = {"P" + evil, {}};
+  run.to = {"Room 210" + evil, {}};
+  run.raceway = {evil, {}};
+  run.length = 3.0;
+  building.runs.push_back(run);
+  const std::string page = page_of(findings, building);
+  EXPECT_EQ(count(page, "<script"), 1u);
+  EXPECT_EQ(count(page, "<img"), 0u);
+  EXPECT_EQ(count(page, "<style"), 1u);
+  EXPECT_GT(count(page, "&lt;script&gt;alert(1)"), 20u);
+}
+
+/// Ten thousand conductors, each reached at three places; `floating` of a thousand are not fed.
+netlists::Findings many(int floating) {
+  netlists::Findings findings = tests::sample_findings();
+  const netlists::ConductorFindings spare = findings.conductors[1];
+  const netlists::ConductorFindings fed = findings.conductors[3];
+  findings.conductors.clear();
+  for (int k = 0; k < 10000; ++k) {
+    netlists::ConductorFindings one = k % 1000 < floating ? spare : fed;
+    one.id = "LP" + std::to_string(k / 40) + "-" + std::to_string(k % 40) + ".switched";
+    if (one.rank) one.rank = k + 1;
+    while (one.places.size() < 3) one.places.push_back(one.places.front());
+    for (std::size_t p = 0; p < 3; ++p)
+      one.places[p].place = "Room " + std::to_string(k / 40 * 3 + static_cast<int>(p));
+    findings.states.push_back("breaker LP" + std::to_string(k / 40) + "-" + std::to_string(k % 40) + " on");
+    findings.conductors.push_back(one);
+  }
+  return findings;
+}
+
+TEST(ReportPage, StaysBelowThreeMegabytesAndSaysWhatIsLeftOut) {
+  for (const int floating : {50, 200, 1000}) {
+    const std::string page = page_of(many(floating));
+    EXPECT_LT(page.size(), 3'000'000u) << floating;
+    EXPECT_GT(page.size(), 1'500'000u) << floating;
+    EXPECT_THAT(page, HasSubstr("To keep the page small")) << floating;
+    EXPECT_THAT(page, HasSubstr("LP249-39.switched")) << floating;  // none is lost
+  }
+}
+
+// A purely capacitive source of reactance X shows V / sqrt 2 to a resistance of X: |R / (R - jX)|.
+TEST(CurvePoints, FollowTheDivider) {
+  const auto points = io::curve_points({0.0, 80.0}, {0.0, -1e5}, 7);
+  ASSERT_EQ(points.size(), 7u);
+  EXPECT_NEAR(points[3].resistance, 1e5, 1e-6);
+  EXPECT_NEAR(points[3].volts, 80.0 / std::sqrt(2.0), 1e-9);
+  EXPECT_NEAR(points[0].volts, 80.0 * 1e2 / std::hypot(1e2, 1e5), 1e-9);
+  EXPECT_TRUE(io::curve_points(0.0, 1.0, 7).empty());
+}
+
+// What is drawn tip to tail has to end where the sum ends.
+TEST(PhasorFigure, ContributionsComeToTheSum) {
+  netlists::PlaceFindings place = tests::reached("JB-1", {30.0, 40.0}, {1e5, 0.0}, 5e-4);
+  place.contributions = {
+      {"a", "electric", {40.0, 0.0}}, {"b", "magnetic", {0.0, 60.0}}, {"c", "electric", {-10.0, -20.0}}};
+  const std::string figure = io::phasor_figure(place);
+  const std::regex arrow("class=\"v ([a-z]+)\" d=\"M[^L]*L([^\"]*)\"");
+  std::vector<std::pair<std::string, std::string>> ends;
+  for (auto at = std::sregex_iterator(figure.begin(), figure.end(), arrow); at != std::sregex_iterator();
+       ++at)
+    ends.emplace_back((*at)[1], (*at)[2]);
+  ASSERT_EQ(ends.size(), 4u);
+  EXPECT_EQ(ends.front().first, "vs");
+  EXPECT_EQ(ends.front().second, ends.back().second);
+  EXPECT_THAT(figure, HasSubstr("50.0 V at 53.1 deg"));  // 3, 4, 5
+}
+
+TEST(PhasorFigure, IsLeftOutWithoutContributions) {
+  EXPECT_EQ(io::phasor_figure(tests::reached("JB-1", {1.0, 0.0}, {1.0, 0.0}, 1.0)), "");
+}
+
+}  // namespace
