@@ -40,8 +40,14 @@ void require_layers(const std::string& what, double radius, const std::vector<La
   }
 }
 
-void require_wall(const std::string& what, double inner, double outer, bool may_be_thin) {
-  require_length("the inner radius of " + what, inner);
+void require_core(const std::string& what, const Core& core) {
+  if (!core.half_size.allFinite() || core.half_size.minCoeff() < 0.0 || !std::isfinite(core.turn))
+    throw std::invalid_argument("the core of " + what + " is not finite, or its size is negative");
+}
+
+void require_wall(const std::string& what, const Core& core, double inner, double outer, bool may_be_thin) {
+  require_core(what, core);
+  if (!(core.is_rectangle() && inner == 0.0)) require_length("the inner radius of " + what, inner);
   require_length("the outer radius of " + what, outer);
   if (outer < inner || (outer == inner && !may_be_thin))
     throw std::invalid_argument("the wall of " + what + " is inside out: inner radius " + in_mm(inner) +
@@ -57,10 +63,10 @@ void require_items(const CrossSection& section) {
     require_layers(name, c.radius, c.layers);
   }
   for (size_t i = 0; i < section.bodies.size(); ++i) {
-    const RoundBody& b = section.bodies[i];
+    const Body& b = section.bodies[i];
     const std::string name = "body " + std::to_string(i);
     require_centre(name, b.centre);
-    require_wall(name, b.inner_radius, b.outer_radius, true);
+    require_wall(name, b.core, b.inner_radius, b.outer_radius, true);
     require_dielectric("the wall of " + name, b.wall);
     require_dielectric("the filler of " + name, b.filler);
   }
@@ -68,40 +74,15 @@ void require_items(const CrossSection& section) {
     const Shell& s = section.shells[i];
     const std::string name = "shell " + std::to_string(i);
     require_centre(name, s.centre);
-    require_wall(name, s.inner_radius, s.outer_radius, false);
+    require_wall(name, s.core, s.inner_radius, s.outer_radius, false);
     require_dielectric("the filler of " + name, s.filler);
     require_layers(name, s.outer_radius, s.layers);
+    if (!s.layers.empty() && !s.core.is_point())
+      throw std::invalid_argument(name + " is not round, so it cannot have layers");
   }
 }
 
-void require_inside_tube(const Circle& circle, double tube_radius) {
-  const double away = circle.centre.norm();
-  if (away + circle.outer_radius > tube_radius + k_contact_tolerance)
-    throw std::invalid_argument(name_of(circle) + " lies outside the tube: it reaches " +
-                                in_mm(away + circle.outer_radius) +
-                                " from the tube's centre, the inner radius is " + in_mm(tube_radius));
-  if (circle.metal_radius > 0.0 && tube_radius - away - circle.metal_radius <= k_contact_tolerance)
-    throw std::invalid_argument("the metal of " + name_of(circle) + " touches the tube: it reaches " +
-                                in_mm(away + circle.metal_radius) +
-                                " from the tube's centre, the inner radius is " + in_mm(tube_radius));
-}
-
-void require_above_plane(const Circle& circle) {
-  const double height = circle.centre.y();
-  if (height - circle.outer_radius < -k_contact_tolerance)
-    throw std::invalid_argument(name_of(circle) + " lies under the plane: its centre is " + in_mm(height) +
-                                " above it, its radius is " + in_mm(circle.outer_radius));
-  if (circle.metal_radius > 0.0 && height - circle.metal_radius <= k_contact_tolerance)
-    throw std::invalid_argument("the metal of " + name_of(circle) + " touches the plane: its centre is " +
-                                in_mm(height) + " above it, its metal radius is " +
-                                in_mm(circle.metal_radius));
-}
-
-void require_surroundings(const CrossSection& section, const std::vector<Circle>& circles) {
-  if (section.surroundings == Surroundings::metal_tube)
-    for (const Circle& circle : circles) require_inside_tube(circle, section.tube_inner_radius);
-  if (section.surroundings == Surroundings::plane)
-    for (const Circle& circle : circles) require_above_plane(circle);
+void require_reference(const CrossSection& section) {
   if (section.surroundings == Surroundings::open &&
       (section.reference < 0 || section.reference >= section.conductor_count()))
     throw std::invalid_argument(
@@ -118,9 +99,10 @@ void require_valid(const CrossSection& section) {
     throw std::invalid_argument(text.str());
   }
   if (section.surroundings == Surroundings::metal_tube)
-    require_wall("the tube", section.tube_inner_radius, section.tube_outer_radius, false);
+    require_wall("the tube", section.tube_core, section.tube_inner_radius, section.tube_outer_radius, false);
   require_items(section);
-  require_surroundings(section, nested_circles(section));
+  nested_solids(section);
+  require_reference(section);
 }
 
 }  // namespace engine

@@ -25,6 +25,16 @@ struct Layer {
   Dielectric dielectric;
 };
 
+/// What the radii of a body or a tube are counted from: a point (a round one), a line (a flat one with
+/// round ends) or a rectangle.
+struct Core {
+  Eigen::Vector2d half_size = Eigen::Vector2d::Zero();  // m, half of the width and of the height
+  double turn = 0.0;                                    // rad, counter-clockwise
+
+  bool is_point() const { return half_size == Eigen::Vector2d::Zero(); }
+  bool is_rectangle() const { return half_size.minCoeff() > 0.0; }
+};
+
 /// A round conductor, solid or of concentric strands, with its layers from the inside out.
 struct RoundConductor {
   Eigen::Vector2d centre = Eigen::Vector2d::Zero();  // m
@@ -37,18 +47,20 @@ struct RoundConductor {
   double outer_radius() const { return layers.empty() ? radius : layers.back().outer_radius; }  // m
 };
 
-/// A round insulating body that holds conductors: a plastic conduit (filler air) or a jacket (filler
-/// solid). Whatever lies inside inner_radius lies in the filler.
-struct RoundBody {
+/// An insulating body that holds conductors: a plastic conduit (filler air) or a jacket, round or flat
+/// (filler solid). Whatever lies within inner_radius of the core lies in the filler.
+struct Body {
   Eigen::Vector2d centre = Eigen::Vector2d::Zero();  // m
   double inner_radius = 0.0;                         // m
   double outer_radius = 0.0;                         // m
   Dielectric wall;
   Dielectric filler;
+  Core core = {};
 };
 
-/// A round metal tube that holds conductors and is a conductor itself: armour, a screen, a metal
-/// raceway. Air inside unless `filler` says otherwise; `layers` is what covers it outside.
+/// A metal tube that holds conductors and is a conductor itself: armour, a screen, a metal raceway. Air
+/// inside unless `filler` says otherwise; `layers` is what covers it outside, if it is round. A wireway of
+/// sheet is a rectangle of inner_radius 0 and of its wall as outer_radius: bent, so round outside.
 struct Shell {
   Eigen::Vector2d centre = Eigen::Vector2d::Zero();  // m
   double inner_radius = 0.0;                         // m
@@ -57,6 +69,7 @@ struct Shell {
   Metal metal;
   Dielectric filler;
   std::vector<Layer> layers;
+  Core core = {};
 
   double covered_radius() const { return layers.empty() ? outer_radius : layers.back().outer_radius; }  // m
 };
@@ -65,7 +78,7 @@ struct Shell {
 enum class Surroundings {
   open,       // air to infinity; the net charge of all conductors is zero
   plane,      // an earthed plane at y = 0, everything above it
-  metal_tube  // a round metal tube centred on the origin
+  metal_tube  // a metal tube, round or rectangular, centred on the origin
 };
 
 /// A whole section. Conductors are numbered as they stand in `conductors`, then the shells as they
@@ -76,8 +89,9 @@ struct CrossSection {
   double tube_inner_radius = 0.0;  // m, for metal_tube
   double tube_outer_radius = 0.0;  // m, for metal_tube
   Metal tube_metal;                // for metal_tube
+  Core tube_core;                  // for metal_tube
   std::vector<RoundConductor> conductors;
-  std::vector<RoundBody> bodies;
+  std::vector<Body> bodies;
   std::vector<Shell> shells;
   int reference = -1;       // for open: the number of the reference conductor
   double tolerance = 1e-4;  // of the capacitance matrix, max |dC_ij| / sqrt(C_ii C_jj)

@@ -267,7 +267,7 @@ LevelMatrices port_matrices(const Region& region, const Potentials& potentials, 
 }
 
 // One value per harmonic k of a body's wall, for its cosine and its sine.
-VectorXcd per_harmonic(const RoundBody& body, Complex medium, int order, Complex WallResponse::*part) {
+VectorXcd per_harmonic(const Body& body, Complex medium, int order, Complex WallResponse::*part) {
   VectorXcd values(2 * order);
   for (int k = 1; k <= order; ++k)
     values(2 * k - 2) = values(2 * k - 1) = wall_response(body, medium, k).*part;
@@ -276,7 +276,7 @@ VectorXcd per_harmonic(const RoundBody& body, Complex medium, int order, Complex
 
 // The wall's inner surface acts by its exact image; what its outer surface adds falls like
 // (inner / outer radius)^(2 k) and is summed over the wall's harmonics.
-void add_body_wall(Potentials& potentials, const RoundBody& body, Complex medium, const MatrixXd& at_wall) {
+void add_body_wall(Potentials& potentials, const Body& body, Complex medium, const MatrixXd& at_wall) {
   const Complex image = inner_surface_reflection(body, medium);
   const int order = static_cast<int>(at_wall.rows() / 2);
   const VectorXcd rest = per_harmonic(body, medium, order, &WallResponse::back_inside).array() - image;
@@ -292,7 +292,7 @@ void add_body_wall(Potentials& potentials, const RoundBody& body, Complex medium
 }
 
 // Adds the harmonics that arrive from outside a body to the ports of its inside.
-void add_waves(Ports& ports, const RoundBody& body, const Region& inside, Complex medium, int order,
+void add_waves(Ports& ports, const Body& body, const Region& inside, Complex medium, int order,
                const MatrixXd& at_wall) {
   const Index charges = ports.size(), waves = 2 * order, circles = static_cast<Index>(inside.circles.size());
   const VectorXcd through = per_harmonic(body, medium, order, &WallResponse::through);
@@ -317,8 +317,8 @@ LevelMatrices potential_coefficients(const Region& region) {
   return port_matrices(region, potentials, charge_ports(region, potentials));
 }
 
-CircleResponse body_response(const RoundBody& body, const Region& inside, Complex medium,
-                             const Orders& orders, int wall_order) {
+CircleResponse body_response(const Body& body, const Region& inside, Complex medium, const Orders& orders,
+                             int wall_order) {
   Potentials potentials(inside);
   const MatrixXd at_wall = harmonics_at_wall(potentials.layout, potentials.circles, body.inner_radius,
                                              std::max(orders.back(), wall_order));

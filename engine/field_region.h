@@ -41,7 +41,7 @@ LevelMatrices potential_coefficients(const Region& region);
 
 /// The response of a body in `medium`, seen from outside with harmonics up to `orders`, its inside known
 /// as a region with a body_wall around the origin. `wall_order` harmonics describe the inside of the wall.
-CircleResponse body_response(const RoundBody& body, const Region& inside, std::complex<double> medium,
+CircleResponse body_response(const Body& body, const Region& inside, std::complex<double> medium,
                              const Orders& orders, int wall_order);
 
 }  // namespace engine

@@ -199,7 +199,7 @@ Eigen::VectorXcd metal_reflection(double metal_radius, const std::vector<Layer>&
 namespace {
 
 // Without thickness there is no wall: the filler meets the medium.
-Complex wall_permittivity(const RoundBody& body, Complex medium) {
+Complex wall_permittivity(const Body& body, Complex medium) {
   return body.inner_radius < body.outer_radius ? complex_permittivity(body.wall) : medium;
 }
 
@@ -208,7 +208,7 @@ Complex surface_reflection(Complex e1, Complex e2) { return (e1 - e2) / (e1 + e2
 
 }  // namespace
 
-WallResponse wall_response(const RoundBody& body, Complex medium, int k) {
+WallResponse wall_response(const Body& body, Complex medium, int k) {
   const Complex filler = complex_permittivity(body.filler), wall = wall_permittivity(body, medium);
   const Complex r1 = surface_reflection(filler, wall), r2 = surface_reflection(wall, medium);
   const double tau = std::pow(body.inner_radius / body.outer_radius, k);
@@ -222,7 +222,7 @@ WallResponse wall_response(const RoundBody& body, Complex medium, int k) {
   return response;
 }
 
-Complex inner_surface_reflection(const RoundBody& body, Complex medium) {
+Complex inner_surface_reflection(const Body& body, Complex medium) {
   return surface_reflection(complex_permittivity(body.filler), wall_permittivity(body, medium));
 }
 

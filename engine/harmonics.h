@@ -72,9 +72,9 @@ struct WallResponse {
   std::complex<double> through;       // either way, charge-like to charge-like outward
   std::complex<double> back_outside;  // of what arrives from outside, scaled at the outer radius
 };
-WallResponse wall_response(const RoundBody& body, std::complex<double> medium, int k);
+WallResponse wall_response(const Body& body, std::complex<double> medium, int k);
 
 /// The reflection at the inner surface alone, which back_inside tends to as k grows.
-std::complex<double> inner_surface_reflection(const RoundBody& body, std::complex<double> medium);
+std::complex<double> inner_surface_reflection(const Body& body, std::complex<double> medium);
 
 }  // namespace engine

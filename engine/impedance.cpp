@@ -8,6 +8,8 @@
 
 #include "engine/constants.h"
 #include "engine/earth_return.h"
+#include "engine/equivalent_tube.h"
+#include "engine/section_tree.h"
 
 namespace engine {
 namespace {
@@ -23,25 +25,30 @@ const Eigen::Vector2d& centre(const CrossSection& section, int k) {
   return k < wires ? section.conductors[k].centre : section.shells[k - wires].centre;
 }
 
-double metal_radius(const CrossSection& section, int k) {
-  const int wires = static_cast<int>(section.conductors.size());
-  return k < wires ? section.conductors[k].radius : section.shells[k - wires].outer_radius;
+/// For each conductor the number of the innermost shell that holds it, or k_outside.
+std::vector<int> enclosing_shells(const CrossSection& section) {
+  const SectionTree tree(section);
+  std::vector<int> parents(static_cast<size_t>(section.conductor_count()), k_outside);
+  for (int i = 0; i < tree.size(); ++i) {
+    if (tree.solid(i).kind == Solid::Kind::body) continue;
+    int holder = tree.solid(i).parent;
+    while (holder >= 0 && tree.solid(holder).kind == Solid::Kind::body) holder = tree.solid(holder).parent;
+    if (holder >= 0) parents[static_cast<size_t>(tree.number_of(i))] = tree.number_of(holder);
+  }
+  return parents;
 }
 
-/// The number of the innermost shell that holds conductor k, or k_outside.
-int parent_of(const CrossSection& section, int k) {
+TubeWall wall_of(const Shell& shell) {
+  return equivalent_tube(shell.core, shell.inner_radius, shell.outer_radius);
+}
+
+TubeWall tube_of(const CrossSection& section) {
+  return equivalent_tube(section.tube_core, section.tube_inner_radius, section.tube_outer_radius);
+}
+
+double metal_radius(const CrossSection& section, int k) {
   const int wires = static_cast<int>(section.conductors.size());
-  int parent = k_outside;
-  double least = std::numeric_limits<double>::infinity();  // m
-  for (int s = 0; s < static_cast<int>(section.shells.size()); ++s) {
-    const Shell& shell = section.shells[s];
-    const double reach = (centre(section, k) - shell.centre).norm() + metal_radius(section, k);  // m
-    if (wires + s != k && reach < shell.inner_radius && shell.inner_radius < least) {
-      parent = wires + s;
-      least = shell.inner_radius;
-    }
-  }
-  return parent;
+  return k < wires ? section.conductors[k].radius : wall_of(section.shells[k - wires]).outer_radius;
 }
 
 /// Row k holds 1 for every conductor whose current flows inside the outline of conductor k: its own, and
@@ -57,13 +64,14 @@ MatrixXd currents_within(const std::vector<int>& parent) {
 
 /// The impedances of the wall of a shell. A stated dc resistance stands for the conductivity that gives it.
 TubeImpedance wall_impedance(const Shell& shell, const ImpedanceConditions& conditions) {
+  const TubeWall wall = wall_of(shell);
   Metal metal = shell.metal;
   if (shell.dc_resistance > 0.0) {
-    const double area = std::numbers::pi * (shell.outer_radius - shell.inner_radius) *
-                        (shell.outer_radius + shell.inner_radius);
+    const double area =
+        std::numbers::pi * (wall.outer_radius - wall.inner_radius) * (wall.outer_radius + wall.inner_radius);
     metal.conductivity = 1.0 / (shell.dc_resistance * area);
   }
-  return tube_impedance(shell.inner_radius, shell.outer_radius, metal, conditions.frequency,
+  return tube_impedance(wall.inner_radius, wall.outer_radius, metal, conditions.frequency,
                         conditions.temperature);
 }
 
@@ -80,11 +88,13 @@ Return outer_return(const CrossSection& section, const ImpedanceConditions& cond
       const EarthReturn earth = earth_return(conditions.frequency, conditions.earth_resistivity);
       return {.radius = earth.depth, .shared = earth.resistance};
     }
-    case Surroundings::metal_tube:
-      return {.radius = section.tube_inner_radius,
-              .shared = tube_impedance(section.tube_inner_radius, section.tube_outer_radius,
-                                       section.tube_metal, conditions.frequency, conditions.temperature)
+    case Surroundings::metal_tube: {
+      const TubeWall tube = tube_of(section);
+      return {.radius = tube.inner_radius,
+              .shared = tube_impedance(tube.inner_radius, tube.outer_radius, section.tube_metal,
+                                       conditions.frequency, conditions.temperature)
                             .inner};
+    }
     case Surroundings::open:
       break;
   }
@@ -102,7 +112,7 @@ MatrixXcd loop_impedance(const CrossSection& section, const ImpedanceConditions&
   MatrixXcd loop = MatrixXcd::Zero(n, n);
   for (int i = 0; i < n; ++i) {
     const bool enclosed = parent[i] != k_outside;
-    const double radius = enclosed ? section.shells[parent[i] - wires].inner_radius : outside.radius;
+    const double radius = enclosed ? wall_of(section.shells[parent[i] - wires]).inner_radius : outside.radius;
     const Complex shared = enclosed ? walls[parent[i] - wires].inner : outside.shared;
     for (int j = 0; j < i; ++j) {
       if (parent[j] != parent[i]) continue;
@@ -156,8 +166,7 @@ Eigen::MatrixXcd series_impedance(const CrossSection& section, const ImpedanceCo
     throw std::invalid_argument("a series impedance needs a positive frequency, not " +
                                 std::to_string(conditions.frequency) + " Hz");
   }
-  std::vector<int> parent;
-  for (int k = 0; k < section.conductor_count(); ++k) parent.push_back(parent_of(section, k));
+  const std::vector<int> parent = enclosing_shells(section);
   std::vector<TubeImpedance> walls;
   for (const Shell& shell : section.shells) walls.push_back(wall_impedance(shell, conditions));
 

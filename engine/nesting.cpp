@@ -1,17 +1,19 @@
 #include "engine/nesting.h"
 
+#include <algorithm>
 #include <iomanip>
+#include <optional>
 #include <sstream>
 #include <stdexcept>
 #include <string>
 
 namespace engine {
 
-std::string name_of(const Circle& circle) {
-  const char* kind = circle.kind == Circle::Kind::conductor ? "conductor"
-                     : circle.kind == Circle::Kind::body    ? "body"
-                                                            : "shell";
-  return std::string(kind) + " " + std::to_string(circle.index);
+std::string name_of(const Solid& solid) {
+  const char* kind = solid.kind == Solid::Kind::conductor ? "conductor"
+                     : solid.kind == Solid::Kind::body    ? "body"
+                                                          : "shell";
+  return std::string(kind) + " " + std::to_string(solid.index);
 }
 
 std::string in_mm(double length) {
@@ -20,89 +22,129 @@ std::string in_mm(double length) {
   return text.str();
 }
 
+std::vector<Solid> solids_of(const CrossSection& section) {
+  std::vector<Solid> solids;
+  for (const RoundConductor& c : section.conductors)
+    solids.push_back({Solid::Kind::conductor, static_cast<int>(&c - section.conductors.data()), c.centre,
+                      Core{}, c.outer_radius(), c.radius});
+  for (const Body& b : section.bodies)
+    solids.push_back({Solid::Kind::body, static_cast<int>(&b - section.bodies.data()), b.centre, b.core,
+                      b.outer_radius, 0.0, b.inner_radius});
+  for (const Shell& s : section.shells)
+    solids.push_back({Solid::Kind::shell, static_cast<int>(&s - section.shells.data()), s.centre, s.core,
+                      s.covered_radius(), s.outer_radius, s.inner_radius});
+  return solids;
+}
+
+Outline tube_outline(const CrossSection& section) {
+  return {Eigen::Vector2d::Zero(), section.tube_core, section.tube_inner_radius};
+}
+
 namespace {
 
-std::string pair_name(const Circle& a, const Circle& b) {
+bool holds(const Solid& holder, const Solid& held) {
+  return holder.is_hollow() && room_inside(holder.inner(), held.outer()) >= -k_contact_tolerance;
+}
+
+std::optional<Clash> clash_inside(const std::vector<Solid>& solids, int holder, int held) {
+  const Solid& around = solids[static_cast<size_t>(holder)];
+  const Solid& inside = solids[static_cast<size_t>(held)];
+  if (!around.is_metal() || !inside.is_metal() ||
+      room_inside(around.inner(), inside.metal()) > k_contact_tolerance)
+    return std::nullopt;
+  return Clash{Clash::Kind::metal_touches_inside, held, holder, 0.0};
+}
+
+std::optional<Clash> clash_between(const std::vector<Solid>& solids, int i, int j) {
+  const Solid &a = solids[static_cast<size_t>(i)], &b = solids[static_cast<size_t>(j)];
+  if (holds(a, b)) return clash_inside(solids, i, j);
+  if (holds(b, a)) return clash_inside(solids, j, i);
+  const double gap = gap_between(a.outer(), b.outer());
+  if (gap >= -k_contact_tolerance) {
+    if (a.is_metal() && b.is_metal() && gap_between(a.metal(), b.metal()) <= k_contact_tolerance)
+      return Clash{Clash::Kind::metal_touches, j, i, 0.0};
+    return std::nullopt;
+  }
+  // In the wall of one that could hold it, if its middle is within.
+  for (const auto& [holder, held] : {std::pair(i, j), std::pair(j, i)}) {
+    const Solid &around = solids[static_cast<size_t>(holder)], &inside = solids[static_cast<size_t>(held)];
+    const bool larger = farthest(around.outer(), around.centre) >= farthest(inside.outer(), inside.centre);
+    if (around.is_hollow() && larger && signed_distance(around.inner(), inside.centre) < 0.0)
+      return Clash{Clash::Kind::crosses_wall, held, holder, -room_inside(around.inner(), inside.outer())};
+  }
+  return Clash{Clash::Kind::overlap, j, i, -gap};
+}
+
+std::optional<Clash> clash_with_surroundings(const CrossSection& section, const std::vector<Solid>& solids,
+                                             int part) {
+  const Solid& solid = solids[static_cast<size_t>(part)];
+  const bool tube = section.surroundings == Surroundings::metal_tube;
+  if (!tube && section.surroundings != Surroundings::plane) return std::nullopt;
+  const auto room = [&](const Outline& o) {
+    return tube ? room_inside(tube_outline(section), o) : lowest(o);
+  };
+  if (room(solid.outer()) < -k_contact_tolerance)
+    return Clash{Clash::Kind::crosses_wall, part, -1, -room(solid.outer())};
+  if (solid.is_metal() && room(solid.metal()) <= k_contact_tolerance)
+    return Clash{Clash::Kind::metal_touches_inside, part, -1, 0.0};
+  return std::nullopt;
+}
+
+std::string both(const Solid& a, const Solid& b) {
   if (a.kind != b.kind) return name_of(a) + " and " + name_of(b);
-  const std::string plural = a.kind == Circle::Kind::body    ? "bodies"
-                             : a.kind == Circle::Kind::shell ? "shells"
-                                                             : "conductors";
+  const std::string plural = a.kind == Solid::Kind::body    ? "bodies"
+                             : a.kind == Solid::Kind::shell ? "shells"
+                                                            : "conductors";
   return plural + " " + std::to_string(a.index) + " and " + std::to_string(b.index);
 }
 
-std::vector<Circle> circles_of(const CrossSection& section) {
-  std::vector<Circle> circles;
-  const auto add = [&](Circle::Kind kind, size_t index, const Eigen::Vector2d& centre, double outer,
-                       double metal, double inner) {
-    circles.push_back({kind, static_cast<int>(index), centre, outer, metal, inner, -1});
-  };
-  for (size_t i = 0; i < section.conductors.size(); ++i) {
-    const RoundConductor& c = section.conductors[i];
-    add(Circle::Kind::conductor, i, c.centre, c.outer_radius(), c.radius, 0.0);
+std::string message(const CrossSection& section, const std::vector<Solid>& solids, const Clash& clash) {
+  const Solid& part = solids[static_cast<size_t>(clash.part)];
+  const std::string by = " by " + in_mm(clash.by);
+  if (clash.other < 0) {
+    const bool plane = section.surroundings == Surroundings::plane;
+    if (clash.kind == Clash::Kind::crosses_wall)
+      return name_of(part) + (plane ? " reaches under the plane" : " sticks out of the tube") + by;
+    return "the metal of " + name_of(part) + " touches the " + (plane ? "plane" : "tube");
   }
-  for (size_t i = 0; i < section.bodies.size(); ++i) {
-    const RoundBody& b = section.bodies[i];
-    add(Circle::Kind::body, i, b.centre, b.outer_radius, 0.0, b.inner_radius);
+  const Solid& other = solids[static_cast<size_t>(clash.other)];
+  switch (clash.kind) {
+    case Clash::Kind::overlap:
+      return both(other, part) + " overlap" + by;
+    case Clash::Kind::crosses_wall:
+      return name_of(part) + " crosses the inner wall of " + name_of(other) + by;
+    case Clash::Kind::metal_touches:
+      return "the metal of " + both(other, part) + " touches";
+    case Clash::Kind::metal_touches_inside:
+      break;
   }
-  for (size_t i = 0; i < section.shells.size(); ++i) {
-    const Shell& s = section.shells[i];
-    add(Circle::Kind::shell, i, s.centre, s.covered_radius(), s.outer_radius, s.inner_radius);
-  }
-  return circles;
-}
-
-bool holds(const Circle& holder, const Circle& held) {
-  return (holder.centre - held.centre).norm() + held.outer_radius <=
-         holder.inner_radius + k_contact_tolerance;
-}
-
-[[noreturn]] void refuse_crossing(const Circle& a, const Circle& b, double apart) {
-  const Circle& holder = a.inner_radius > b.inner_radius ? a : b;
-  const Circle& held = &holder == &a ? b : a;
-  if (apart < holder.inner_radius)
-    throw std::invalid_argument(name_of(held) + " crosses the inner wall of " + name_of(holder) +
-                                ": it reaches " + in_mm(apart + held.outer_radius) +
-                                " from the centre, the inner radius is " + in_mm(holder.inner_radius));
-  throw std::invalid_argument(pair_name(a, b) + " overlap: centres " + in_mm(apart) +
-                              " apart, radii sum to " + in_mm(a.outer_radius + b.outer_radius));
-}
-
-void require_metal_apart(const Circle& a, const Circle& b, double apart) {
-  if (a.metal_radius == 0.0 || b.metal_radius == 0.0) return;
-  if (apart - a.metal_radius - b.metal_radius <= k_contact_tolerance)
-    throw std::invalid_argument("the metal of " + pair_name(a, b) + " touches: centres " + in_mm(apart) +
-                                " apart, metal radii sum to " + in_mm(a.metal_radius + b.metal_radius));
-}
-
-void require_metal_inside(const Circle& holder, const Circle& held, double apart) {
-  if (holder.kind != Circle::Kind::shell || held.metal_radius == 0.0) return;
-  if (holder.inner_radius - apart - held.metal_radius <= k_contact_tolerance)
-    throw std::invalid_argument("the metal of " + name_of(held) + " touches the inside of " +
-                                name_of(holder) + ": it reaches " + in_mm(apart + held.metal_radius) +
-                                " from the centre, the inner radius is " + in_mm(holder.inner_radius));
-}
-
-void require_compatible(const Circle& a, const Circle& b) {
-  const double apart = (a.centre - b.centre).norm();
-  if (holds(a, b)) return require_metal_inside(a, b, apart);
-  if (holds(b, a)) return require_metal_inside(b, a, apart);
-  if (apart < a.outer_radius + b.outer_radius - k_contact_tolerance) refuse_crossing(a, b, apart);
-  require_metal_apart(a, b, apart);
+  return "the metal of " + name_of(part) + " touches the inside of " + name_of(other);
 }
 
 }  // namespace
 
-std::vector<Circle> nested_circles(const CrossSection& section) {
-  std::vector<Circle> circles = circles_of(section);
-  const int count = static_cast<int>(circles.size());
-  for (int i = 0; i < count; ++i)
-    for (int j = 0; j < i; ++j) require_compatible(circles[j], circles[i]);
-  for (Circle& held : circles)
-    for (int j = 0; j < count; ++j)
-      if (&circles[j] != &held && holds(circles[j], held) &&
-          (held.parent < 0 || circles[j].inner_radius < circles[held.parent].inner_radius))
-        held.parent = j;
-  return circles;
+std::vector<Clash> clashes(const CrossSection& section, const std::vector<Solid>& solids) {
+  std::vector<Clash> found;
+  for (int i = 0; i < static_cast<int>(solids.size()); ++i) {
+    if (const auto clash = clash_with_surroundings(section, solids, i)) found.push_back(*clash);
+    for (int j = 0; j < i; ++j)
+      if (const auto clash = clash_between(solids, j, i)) found.push_back(*clash);
+  }
+  return found;
+}
+
+std::vector<Solid> nested_solids(const CrossSection& section) {
+  std::vector<Solid> solids = solids_of(section);
+  if (const auto found = clashes(section, solids); !found.empty())
+    throw std::invalid_argument(message(section, solids, found.front()));
+  for (Solid& held : solids)
+    for (int j = 0; j < static_cast<int>(solids.size()); ++j) {
+      const Solid& holder = solids[static_cast<size_t>(j)];
+      if (&holder == &held || !holds(holder, held)) continue;
+      // Of two that hold it the inner one is held by the other.
+      if (held.parent < 0 || holds(solids[static_cast<size_t>(held.parent)], holder)) held.parent = j;
+    }
+  return solids;
 }
 
 }  // namespace engine

@@ -9,7 +9,7 @@
 #include <tuple>
 
 #include "io/catalogue_entry.h"
-#include "io/section_outlines.h"
+#include "io/section_clashes.h"
 #include "io/section_values.h"
 #include "io/yaml_reader.h"
 
@@ -28,6 +28,8 @@ std::string owner_of(const char* kind, const YamlNode& node) {
       return fmt::format("{} '{}'", kind, node.items[i + 1].text);
   return kind;
 }
+
+enum class Enclosure { open, plane, metal_tube, rectangle };
 
 /// Reads one section file: a function a key of its top level.
 class SectionReading {
@@ -56,7 +58,7 @@ class SectionReading {
     if (file_.names.empty()) top.error(tree, "the section has no conductors");
     read_reference(top);
     if (netlists::any_error(file_.faults)) return;
-    check_outlines(reader_, outlines_, file_.section);
+    report_clashes(reader_, file_.section, places());
     if (!netlists::any_error(file_.faults)) check_with_engine(tree);
   }
 
@@ -87,34 +89,47 @@ class SectionReading {
     const YamlNode* node = top.require("enclosure");
     if (node == nullptr) return;
     const YamlMap map(reader_, *node, "enclosure",
-                      {"kind", "inner_diameter", "outer_diameter", "material", "width", "height"});
+                      {"kind", "inner_diameter", "outer_diameter", "material", "width", "height", "wall"});
     map.require("kind");
-    const std::optional<Surroundings> none;
-    const auto kind =
-        map.choice<std::optional<Surroundings>>("kind", {{"metal_tube", Surroundings::metal_tube},
-                                                         {"open", Surroundings::open},
-                                                         {"plane", Surroundings::plane},
-                                                         {"rectangle", none}});
+    const auto kind = map.choice<Enclosure>("kind", {{"metal_tube", Enclosure::metal_tube},
+                                                     {"open", Enclosure::open},
+                                                     {"plane", Enclosure::plane},
+                                                     {"rectangle", Enclosure::rectangle}});
     if (!kind) return;
-    if (!*kind) {
-      map.error(*map.find("kind"), "kind 'rectangle' is not supported yet; metal_tube, open and plane are");
-      return;
-    }
-    file_.section.surroundings = **kind;
     enclosed_ = true;
-    if (**kind == Surroundings::metal_tube)
-      read_metal_tube(map);
-    else
-      for (const char* key : {"inner_diameter", "outer_diameter", "material", "width", "height"})
-        if (map.has(key)) map.error(*map.key_node(key), fmt::format("{} belongs to another kind", key));
+    switch (*kind) {
+      case Enclosure::metal_tube:
+        refuse_keys(map, {"width", "height", "wall"});
+        return read_metal_tube(map);
+      case Enclosure::rectangle:
+        refuse_keys(map, {"inner_diameter", "outer_diameter"});
+        return read_rectangle(map);
+      case Enclosure::plane:
+        file_.section.surroundings = Surroundings::plane;
+        break;
+      case Enclosure::open:
+        break;
+    }
+    refuse_keys(map, {"inner_diameter", "outer_diameter", "material", "width", "height", "wall"});
+  }
+
+  static void refuse_keys(const YamlMap& map, const std::vector<const char*>& keys) {
+    for (const char* key : keys)
+      if (map.has(key)) map.error(*map.key_node(key), fmt::format("{} belongs to another kind", key));
   }
 
   void read_metal_tube(const YamlMap& map) {
-    for (const char* key : {"width", "height"})
-      if (map.has(key)) map.error(*map.key_node(key), fmt::format("{} belongs to another kind", key));
+    file_.section.surroundings = Surroundings::metal_tube;
     const auto [inner, outer] = values_.read_wall(map);
     file_.section.tube_inner_radius = inner;
     file_.section.tube_outer_radius = outer;
+    file_.section.tube_metal = values_.read_metal(map, "steel");
+  }
+
+  void read_rectangle(const YamlMap& map) {
+    file_.section.surroundings = Surroundings::metal_tube;
+    file_.section.tube_core.half_size = values_.read_size(map) / 2;
+    file_.section.tube_outer_radius = values_.read_sheet(map);
     file_.section.tube_metal = values_.read_metal(map, "steel");
   }
 
@@ -146,8 +161,7 @@ class SectionReading {
           fmt::format("{} strands do not lie in rings; it takes 1, 7, 19, 37, 61, ...", conductor.strands));
     conductor.metal = values_.read_metal(map, "copper");
     conductor.layers = values_.read_insulation(map, conductor.radius);
-    outlines_.push_back(
-        {map.owner(), &node, conductor.centre, conductor.outer_radius(), 0.0, conductor.radius});
+    conductors_.push_back({map.owner(), &node});
     file_.section.conductors.push_back(std::move(conductor));
     file_.names.push_back(name);
   }
@@ -167,14 +181,13 @@ class SectionReading {
     shell.metal = values_.read_metal(map, "steel");
     if (const auto filler = values_.read_filler(map)) shell.filler = *filler;
     shell.layers = values_.read_insulation(map, shell.outer_radius);
-    outlines_.push_back(
-        {map.owner(), &node, shell.centre, shell.covered_radius(), shell.inner_radius, shell.outer_radius});
+    shells_.push_back({map.owner(), &node});
     file_.section.shells.push_back(std::move(shell));
     file_.names.push_back(name);
   }
 
-  void add_body(const std::string& what, const YamlNode& node, const engine::RoundBody& body) {
-    outlines_.push_back({what, &node, body.centre, body.outer_radius, body.inner_radius, 0.0});
+  void add_body(const std::string& what, const YamlNode& node, const engine::Body& body) {
+    bodies_.push_back({what, &node});
     file_.section.bodies.push_back(body);
   }
 
@@ -183,7 +196,7 @@ class SectionReading {
         reader_, node, what,
         {"centre", "inner_diameter", "outer_diameter", "permittivity", "loss_tangent", "material"});
     if (!map.is_map()) return;
-    engine::RoundBody body;
+    engine::Body body;
     body.centre = values_.read_centre(map);
     std::tie(body.inner_radius, body.outer_radius) = values_.read_wall(map);
     body.wall = values_.read_dielectric(map);
@@ -195,24 +208,37 @@ class SectionReading {
         reader_, node, what,
         {"centre", "circle", "stadium", "permittivity", "loss_tangent", "material", "filler", "wall"});
     if (!map.is_map()) return;
-    engine::RoundBody body;
+    engine::Body body;
     body.centre = values_.read_centre(map);
     body.wall = values_.read_dielectric(map);
-    if (map.has("stadium")) {
-      map.error(*map.key_node("stadium"), "the outline 'stadium' is not supported yet; 'circle' is");
+    if (map.has("circle") == map.has("stadium")) {
+      map.error(map.place(), "takes either a circle or a stadium");
       return;
     }
-    const YamlNode* circle = map.require("circle");
-    if (circle == nullptr) return;
-    const YamlMap round(reader_, *circle, what + ": circle", {"diameter"});
-    round.require("diameter");
-    body.outer_radius = round.quantity("diameter", Dimension::length, k_size).value_or(0.0) / 2;
+    if (map.has("circle"))
+      read_circle(map, body);
+    else
+      read_stadium(map, body);
     read_inside(map, body);
     add_body(what, node, body);
   }
 
+  void read_circle(const YamlMap& map, engine::Body& body) {
+    const YamlMap round(reader_, *map.find("circle"), map.owner() + ": circle", {"diameter"});
+    round.require("diameter");
+    body.outer_radius = round.quantity("diameter", Dimension::length, k_size).value_or(0.0) / 2;
+  }
+
+  /// A strip with round ends, lying or, where it is higher than wide, standing.
+  void read_stadium(const YamlMap& map, engine::Body& body) {
+    const YamlMap flat(reader_, *map.find("stadium"), map.owner() + ": stadium", {"width", "height"});
+    const Eigen::Vector2d half_size = values_.read_size(flat) / 2;
+    body.outer_radius = half_size.minCoeff();
+    body.core.half_size = half_size.array() - body.outer_radius;
+  }
+
   /// Solid as far as the jacket reaches, or a filler inside a wall.
-  void read_inside(const YamlMap& map, engine::RoundBody& body) {
+  void read_inside(const YamlMap& map, engine::Body& body) {
     body.inner_radius = body.outer_radius;
     body.filler = body.wall;
     if (map.has("filler") != map.has("wall")) map.error(map.place(), "filler and wall come together");
@@ -220,7 +246,8 @@ class SectionReading {
     const auto wall = map.quantity("wall", Dimension::length, k_size);
     if (!wall) return;
     body.inner_radius = body.outer_radius - *wall;
-    if (body.inner_radius <= 0) map.error(*map.find("wall"), "wall must be under half the diameter");
+    if (body.inner_radius <= 0)
+      map.error(*map.find("wall"), "wall must be under half the thickness of the jacket");
   }
 
   void read_reference(const YamlMap& top) {
@@ -253,6 +280,14 @@ class SectionReading {
     }
   }
 
+  /// In the order in which the engine counts them.
+  std::vector<SolidPlace> places() const {
+    std::vector<SolidPlace> all = conductors_;
+    all.insert(all.end(), bodies_.begin(), bodies_.end());
+    all.insert(all.end(), shells_.begin(), shells_.end());
+    return all;
+  }
+
   /// Whatever else the engine may refuse.
   void check_with_engine(const YamlNode& tree) {
     try {
@@ -266,7 +301,7 @@ class SectionReading {
   YamlReader reader_;
   SectionValues values_;
   bool enclosed_ = false;  // the kind of the enclosure is known
-  std::vector<Outline> outlines_;
+  std::vector<SolidPlace> conductors_, bodies_, shells_;
   std::set<std::string> taken_;
 };
 

@@ -12,6 +12,7 @@ using engine::Metal;
 
 constexpr Range k_size{1e-6, 100.0, "0.001 mm to 100 m"};
 constexpr Range k_position{-1e3, 1e3, "-1 km to 1 km"};
+constexpr double k_usual_sheet = 1.5e-3;  // m, 16 gauge: UL 870 and common practice, from memory
 constexpr Range k_permittivity{1.0, 1e4, "1 to 10000"};
 constexpr Range k_loss{0.0, 10.0, "0 to 10"};
 
@@ -39,6 +40,19 @@ Eigen::Vector2d SectionValues::read_centre(const YamlMap& map) {
   const auto x = reader_.quantity((*items)[0], Dimension::length, k_position, {map.owner(), "centre"});
   const auto y = reader_.quantity((*items)[1], Dimension::length, k_position, {map.owner(), "centre"});
   return {x.value_or(0.0), y.value_or(0.0)};
+}
+
+Eigen::Vector2d SectionValues::read_size(const YamlMap& map) {
+  map.require("width");
+  map.require("height");
+  return {map.quantity("width", Dimension::length, k_size).value_or(0.0),
+          map.quantity("height", Dimension::length, k_size).value_or(0.0)};
+}
+
+double SectionValues::read_sheet(const YamlMap& map) {
+  if (map.has("wall")) return map.quantity("wall", Dimension::length, k_size).value_or(k_usual_sheet);
+  note(fmt::format("wall of the enclosure: {:.2g} mm, the usual sheet of a wireway", k_usual_sheet * 1e3));
+  return k_usual_sheet;
 }
 
 void SectionValues::note(const std::string& words) {

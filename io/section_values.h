@@ -24,6 +24,10 @@ class SectionValues {
   Eigen::Vector2d read_centre(const YamlMap& map);
   /// Radii in m of `inner_diameter` and `outer_diameter`, both due.
   std::pair<double, double> read_wall(const YamlMap& map);
+  /// `width` and `height`, both due, in m.
+  Eigen::Vector2d read_size(const YamlMap& map);
+  /// `wall` of sheet metal in m; the usual one, noted, where it is left out.
+  double read_sheet(const YamlMap& map);
   /// `material`: a metal of the catalogue, or one by its values; `usual` where it is left out.
   engine::Metal read_metal(const YamlMap& map, const std::string& usual);
   /// Either `material`, an insulator of the catalogue, or `permittivity` and `loss_tangent`.

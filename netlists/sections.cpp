@@ -130,7 +130,7 @@ class Assembly {
   }
 
   void add_plastic_tube(const RacewayType& raceway, const Eigen::Vector2d& centre) {
-    engine::RoundBody tube;
+    engine::Body tube;
     tube.centre = centre;
     tube.inner_radius = raceway.inner_diameter / 2;
     tube.outer_radius = raceway.outer_diameter / 2;
@@ -191,7 +191,7 @@ class Assembly {
 
   // The jacket of a flat cable is taken as the circle around it, filled with the cable's filler.
   void add_jacket(const CableType& cable, const Eigen::Vector2d& centre, double reach) {
-    engine::RoundBody body;
+    engine::Body body;
     body.centre = centre;
     body.outer_radius = cable.width / 2;
     body.inner_radius = std::max(body.outer_radius - cable.jacket_thickness, reach + k_joint_slack);

@@ -136,18 +136,47 @@ shells: [{name: screen, centre: [0 mm, 0 mm], inner_diameter: 8 mm, outer_diamet
   EXPECT_EQ(file.section.reference, 1);
 }
 
-TEST(SectionFile, SaysWhichOutlinesAreNotSupportedYet) {
+TEST(SectionFile, ReadsAFlatJacketAndAWireway) {
+  const SectionFile file = read(R"(enclosure: {kind: rectangle, width: 100 mm, height: 50 mm}
+conductors:
+  - {name: a, x: 0 mm, y: 0 mm, diameter: 2 mm}
+jackets:
+  - {centre: [0 mm, 0 mm], stadium: {width: 9.6 mm, height: 4.6 mm}, permittivity: 4.5,
+     filler: {permittivity: 2.5}, wall: 0.8 mm}
+  - {centre: [30 mm, 0 mm], stadium: {width: 4 mm, height: 9 mm}, material: PVC}
+)");
+  ASSERT_THAT(messages(file), IsEmpty());
+  EXPECT_TRUE(file.section.tube_core.half_size.isApprox(Eigen::Vector2d(50e-3, 25e-3)));
+  EXPECT_EQ(file.section.tube_inner_radius, 0.0);
+  EXPECT_DOUBLE_EQ(file.section.tube_outer_radius, 1.5e-3);
+  EXPECT_THAT(file.materials, testing::Contains(HasSubstr("wall of the enclosure: 1.5 mm")));
+  ASSERT_EQ(file.section.bodies.size(), 2u);
+  EXPECT_TRUE(file.section.bodies[0].core.half_size.isApprox(Eigen::Vector2d(2.5e-3, 0.0)));
+  EXPECT_DOUBLE_EQ(file.section.bodies[0].outer_radius, 2.3e-3);
+  EXPECT_DOUBLE_EQ(file.section.bodies[0].inner_radius, 1.5e-3);
+  EXPECT_TRUE(file.section.bodies[1].core.half_size.isApprox(Eigen::Vector2d(0.0, 2.5e-3)));
+}
+
+TEST(SectionFile, OutlinesTakeTheirOwnKeysAlone) {
   EXPECT_THAT(
-      faults_of("enclosure: {kind: rectangle, width: 100 mm, height: 100 mm}\n"
+      faults_of("enclosure: {kind: rectangle, inner_diameter: 9 mm, height: 10 mm}\n"
                 "conductors: [{name: a, x: 0 mm, y: 0 mm, diameter: 2 mm}]\n"),
-      ElementsAre(
-          "one.yaml:2:19: error: enclosure: kind 'rectangle' is not supported yet; metal_tube, open and "
-          "plane are"));
+      ElementsAre(HasSubstr("one.yaml:2:12: error: enclosure: width is missing"),
+                  HasSubstr("one.yaml:2:30: error: enclosure: inner_diameter belongs to another kind")));
+  EXPECT_THAT(faults_of(k_two_wires + "jackets: [{centre: [0 mm, 0 mm], permittivity: 4.5}]\n"),
+              ElementsAre(HasSubstr("jacket 1: takes either a circle or a stadium")));
   EXPECT_THAT(
-      faults_of(
-          k_two_wires +
-          "jackets: [{centre: [0 mm, 0 mm], stadium: {width: 9.6 mm, height: 4.6 mm}, permittivity: 4.5}]\n"),
-      ElementsAre("one.yaml:7:34: error: jacket 1: the outline 'stadium' is not supported yet; 'circle' is"));
+      faults_of(k_two_wires + "jackets: [{centre: [0 mm, 0 mm], stadium: {width: 9 mm, height: 4 mm}, "
+                              "permittivity: 4.5, filler: {permittivity: 2.5}, wall: 2 mm}]\n"),
+      ElementsAre(HasSubstr("jacket 1: wall must be under half the thickness of the jacket")));
+}
+
+TEST(SectionFile, ReportsWhatSticksOutOfAWireway) {
+  EXPECT_THAT(faults_of("enclosure: {kind: rectangle, width: 10 mm, height: 20 mm}\n"
+                        "conductors:\n  - {name: a, x: 4.5 mm, y: 0 mm, diameter: 2 mm}\n"
+                        "  - {name: b, x: 0 mm, y: 9 mm, diameter: 2 mm}\n"),
+              ElementsAre(HasSubstr("one.yaml:4:5: error: conductor 'a': sticks 0.5 mm out of the enclosure"),
+                          HasSubstr("one.yaml:5:5: error: conductor 'b': its metal touches the enclosure")));
 }
 
 TEST(SectionFile, ReportsEveryFaultWithItsPlace) {
@@ -212,17 +241,15 @@ conductors:
   - {name: d, x: 0 mm, y: -9 mm, diameter: 2 mm}
   - {name: e, x: 0 mm, y: 2 mm, diameter: 2 mm}
 )"),
-      ElementsAre(
-          HasSubstr("one.yaml:5:5: error: conductor 'b': overlaps conductor 'a': centres 1.5 mm apart, radii "
-                    "sum to 2 mm"),
-          HasSubstr("one.yaml:6:5: error: conductor 'c': lies outside the enclosure: it reaches 10.5 mm from "
-                    "the centre, the inner radius is 10 mm"),
-          HasSubstr("one.yaml:7:5: error: conductor 'd': its metal touches the enclosure"),
-          HasSubstr("one.yaml:8:5: error: conductor 'e': its metal touches that of conductor 'a'")));
+      ElementsAre(HasSubstr("one.yaml:5:5: error: conductor 'b': overlaps conductor 'a' by 0.5 mm"),
+                  HasSubstr("one.yaml:6:5: error: conductor 'c': sticks 0.5 mm out of the enclosure"),
+                  HasSubstr("one.yaml:7:5: error: conductor 'd': its metal touches the enclosure"),
+                  HasSubstr("one.yaml:8:5: error: conductor 'e': its metal touches that of conductor 'a'")));
 }
 
 TEST(SectionFile, ReportsWhatCrossesAWall) {
-  EXPECT_THAT(faults_of(R"(enclosure: {kind: plane}
+  EXPECT_THAT(
+      faults_of(R"(enclosure: {kind: plane}
 conductors:
   - {name: a, x: 0 mm, y: 10 mm, diameter: 2 mm}
   - {name: b, x: 5 mm, y: 0.5 mm, diameter: 2 mm}
@@ -230,9 +257,10 @@ tubes: [{centre: [5 mm, 10 mm], inner_diameter: 9 mm, outer_diameter: 11 mm, mat
 shells: [{name: s, centre: [30 mm, 10 mm], inner_diameter: 9 mm, outer_diameter: 11 mm, material: copper}]
 jackets: [{centre: [30 mm, 10 mm], circle: {diameter: 10 mm}, material: PVC}]
 )"),
-              ElementsAre(HasSubstr("one.yaml:5:5: error: conductor 'b': lies under the plane"),
-                          HasSubstr("one.yaml:6:9: error: tube 1: overlaps conductor 'a'"),
-                          HasSubstr("one.yaml:8:11: error: jacket 1: overlaps shell 's'")));
+      ElementsAre(
+          HasSubstr("one.yaml:5:5: error: conductor 'b': reaches 0.5 mm under the plane"),
+          HasSubstr("one.yaml:6:9: error: tube 1: overlaps conductor 'a'"),
+          HasSubstr("one.yaml:8:11: error: jacket 1: crosses the inner wall of shell 's' by 0.5 mm")));
 }
 
 TEST(SectionFile, InsulationMayTouch) {

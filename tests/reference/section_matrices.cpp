@@ -60,7 +60,7 @@ json as_json(const Eigen::MatrixXd& matrix) {
 
 json as_json(const CrossSection& section) {
   json circles = json::array(), conductors = json::array();  // insulating circles from the outside in
-  for (const engine::RoundBody& b : section.bodies) {
+  for (const engine::Body& b : section.bodies) {
     circles.push_back(
         {{"x", b.centre.x()}, {"y", b.centre.y()}, {"r", b.outer_radius}, {"e", as_json(b.wall)}});
     circles.push_back(
