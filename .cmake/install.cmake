@@ -17,5 +17,5 @@ configure_package_config_file(${CMAKE_CURRENT_LIST_DIR}/idlewire-config.cmake.in
 write_basic_package_version_file(${PROJECT_BINARY_DIR}/idlewire-config-version.cmake
   COMPATIBILITY SameMinorVersion)
 install(FILES ${PROJECT_BINARY_DIR}/idlewire-config.cmake ${PROJECT_BINARY_DIR}/idlewire-config-version.cmake
-  ${PROJECT_SOURCE_DIR}/engine/cmake/FindKLU.cmake
+  ${PROJECT_SOURCE_DIR}/engine/cmake/FindKLU.cmake ${PROJECT_SOURCE_DIR}/io/cmake/FindXlsxWriter.cmake
   DESTINATION ${package_dir})

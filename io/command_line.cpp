@@ -53,6 +53,10 @@ std::vector<Command> add_commands(CLI::App& app, CommandOptions& options) {
           "--html", options.html,
           "Also write the report, one page with all pictures; - is standard output, without the table")
       ->type_name("FILE");
+  predict
+      ->add_option("--xlsx", options.xlsx,
+                   "Also write a workbook with the list and the test sheets; - is standard output")
+      ->type_name("FILE");
   predict->add_option("--gate", options.gate, "Exit with 1 if such a conductor is ranked")
       ->check(CLI::IsMember({"false_dead", "misleading"}))
       ->type_name("KIND");

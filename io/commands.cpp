@@ -10,6 +10,7 @@
 #include "io/catalogue_file.h"
 #include "io/catalogue_text.h"
 #include "io/check_report.h"
+#include "io/findings_xlsx.h"
 #include "io/page.h"
 #include "io/section_file.h"
 #include "io/terminal.h"
@@ -33,7 +34,7 @@ void say(const std::string& text) {
 /// Where results go is looked at before anything is computed.
 void require_writable(const CommandOptions& options) {
   int to_standard_output = 0;
-  for (const std::string& path : {options.json, options.csv, options.html, options.svg}) {
+  for (const std::string& path : {options.json, options.csv, options.html, options.xlsx, options.svg}) {
     const std::string why = path.empty() ? "" : unwritable(path);
     if (!why.empty()) throw InputError(why);
     if (path == "-") ++to_standard_output;
@@ -181,11 +182,13 @@ int predict_command(const CommandOptions& options) {
   require_writable(options);
   const Predicted all = predicted(options);
   const Findings& findings = all.findings;
-  if (!options.html.empty())
-    write_whole(options.html, report_page({findings, all.building, all.network, today()}));
+  const PageModel page{findings, all.building, all.network, today()};
+  if (!options.html.empty()) write_whole(options.html, report_page(page));
+  if (!options.xlsx.empty()) write_whole(options.xlsx, findings_xlsx(page));
   if (!options.json.empty()) write_whole(options.json, findings_json(findings));
   if (!options.csv.empty()) write_whole(options.csv, findings_csv(findings));
-  if (options.json == "-" || options.csv == "-" || options.html == "-")
+  const bool table = options.json != "-" && options.csv != "-" && options.html != "-" && options.xlsx != "-";
+  if (!table)
     say_warnings(findings.warnings, options);
   else
     write_whole("-", ranked_table(findings, output_width(), output_colour(), today()));

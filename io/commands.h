@@ -20,6 +20,7 @@ struct CommandOptions {
   std::string json;       // file, "-" for standard output, "" for none
   std::string csv;        // likewise
   std::string html;       // likewise
+  std::string xlsx;       // likewise
   std::string svg;        // likewise
   std::string gate;       // "", "false_dead" or "misleading"
   unsigned seed = 1;

@@ -69,7 +69,7 @@ std::string html_list(const std::vector<std::string>& lines) {
 }
 
 std::string scroll_box(const std::string& label, const std::string& inner) {
-  return fmt::format("<div class=wide role=region tabindex=0 aria-label=\"{}\">{}</div>\n", html(label),
+  return fmt::format("<div class=wide role=group tabindex=0 aria-label=\"{}\">{}</div>\n", html(label),
                      inner);
 }
 

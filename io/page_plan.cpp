@@ -135,8 +135,10 @@ class Plan {
     const auto found = in_run_.find(one.name.text);
     const Worst worst = found == in_run_.end() ? Worst() : found->second;
     const std::string raceway = one.raceway.text == "none" ? "no raceway" : one.raceway.text;
-    const std::string told = fmt::format("Run {}, {} to {}, {:.3g} m, {}. {}", one.name.text, one.from.text,
-                                         one.to.text, one.length, raceway, worst.text());
+    // What a person sees has to begin what a screen reader says.
+    const std::string seen = shortened(run_name(edge.run));
+    const std::string told = fmt::format("{}: run {} from {} to {}, {}. {}", seen, one.name.text,
+                                         one.from.text, one.to.text, raceway, worst.text());
     const std::string link = worst.conductor != nullptr && index_.has_sheet(worst.number)
                                  ? fmt::format("c{}", worst.number)
                                  : place_anchor(to.name);
@@ -146,8 +148,7 @@ class Plan {
     return fmt::format(
         "<a href=#{} aria-label=\"{}\"><path class=\"{}\" d=\"{}\" /><path class=ph d=\"{}\" /><text "
         "class=\"pn e\" x={} y={}>{}</text></a>\n",
-        link, html(told), kind(one.name.text), line, line, px(label_x), px(label_y),
-        html(shortened(run_name(edge.run))));
+        link, html(told), kind(one.name.text), line, line, px(label_x), px(label_y), html(seen));
   }
 
   std::string place_anchor(const std::string& place) const {
@@ -158,14 +159,16 @@ class Plan {
   std::string node(const PlanNode& one) const {
     const auto found = at_place_.find(one.name);
     const Worst worst = found == at_place_.end() ? Worst() : found->second;
-    const std::string told = fmt::format("{} {}. {}", one.panel ? "Panel" : "Place", one.name, worst.text());
+    const std::string seen = shortened(one.name);
+    const std::string told = fmt::format("{}: {}{}. {}", seen, one.panel ? "panel" : "place",
+                                         seen == one.name ? "" : " " + one.name, worst.text());
     const double half = one.panel ? 7 : 4;
     return fmt::format(
         "<a href=#{} aria-label=\"{}\"><rect class=\"{}\" x={} y={} width={} height={} /><text class=e x={} "
         "y={}>{}</text></a>\n",
         place_anchor(one.name), html(told), one.panel ? "pp pb" : "pp", px(x(one) - half), px(y(one) - half),
         px(2 * half), px(2 * half + k_lane * std::max(0, one.lanes - 1)), px(x(one) - (one.panel ? 10 : 6)),
-        px(y(one) - 6), html(shortened(one.name)));
+        px(y(one) - 6), html(seen));
   }
 
   const PageModel& model_;

@@ -1,56 +1,12 @@
 #include <fmt/format.h>
 
-#include <algorithm>
-#include <cmath>
-
 #include "io/findings_view.h"
 #include "io/page_html.h"
 #include "io/page_parts.h"
-#include "io/text_layout.h"
+#include "io/test_rows.h"
 
 namespace io {
 namespace {
-using netlists::Condition;
-using netlists::ConductorFindings;
-using netlists::Misleads;
-using netlists::PlaceFindings;
-using netlists::Reading;
-
-/// References that a test sheet has a row for: those judged, and the partner of an isolated leg.
-std::vector<std::string> references(const ConductorFindings& conductor, const PlaceFindings& place) {
-  std::vector<std::string> out;
-  for (const Reading& reading : place.readings)
-    if (reading.judged && std::find(out.begin(), out.end(), reading.reference) == out.end())
-      out.push_back(reading.reference);
-  if (out.empty()) out.push_back(place.reference);
-  const std::string partner = conductor.isolated_supply ? telling_partner(conductor, place) : "";
-  if (!partner.empty() && std::find(out.begin(), out.end(), partner) == out.end()) out.push_back(partner);
-  return out;
-}
-
-/// When to stop: above which value, or why no value tells.
-std::string stop_text(const ConductorFindings& conductor) {
-  if (conductor.isolated_supply) return "isolated supply: no reading to ground settles it; treat as live";
-  if (conductor.condition == Condition::energised || conductor.condition == Condition::through_load)
-    return "fed as drawn: treat as live whatever it reads";
-  if (conductor.settle.instrument)
-    return fmt::format("above {} on {}", limit_text(conductor.settle.treat_as_live_above),
-                       html(*conductor.settle.instrument));
-  return "none of these instruments settles it; treat as live";
-}
-
-void add_rows(HtmlTable& table, const PageIndex& index, std::size_t k, const ConductorFindings& conductor,
-              const PlaceFindings& place) {
-  for (const std::string& reference : references(conductor, place)) {
-    std::vector<std::string> cells{index.link_to(k), html(reference)};
-    for (const std::string& name : index.instruments())
-      cells.push_back(reading_text({&place, reference}, name));
-    const bool partner = reference != place.reference && conductor.isolated_supply;
-    cells.push_back(partner ? "full voltage to its partner: live" : stop_text(conductor));
-    cells.insert(cells.end(), {"", "", ""});
-    table.add(cells);
-  }
-}
 
 std::string names(const char* title, const std::vector<std::string>& list) {
   if (list.empty()) return "";
@@ -58,12 +14,6 @@ std::string names(const char* title, const std::vector<std::string>& list) {
   for (std::size_t k = 0; k < list.size(); ++k) out += (k == 0 ? "" : ", ") + html(list[k]);
   return out + ".</p>\n";
 }
-
-struct Here {
-  const ConductorFindings* conductor;
-  const PlaceFindings* place;
-  std::size_t number;
-};
 
 std::string heading(const PageModel& model, const std::string& place, std::size_t number) {
   const auto& findings = model.findings;
@@ -76,27 +26,26 @@ std::string heading(const PageModel& model, const std::string& place, std::size_
 }
 
 /// One sheet; `states` false where the states assumed would fill the page, and stand in the appendix alone.
-std::string sheet(const PageModel& model, const PageIndex& index, std::size_t number,
-                  const std::vector<Here>& here, bool states) {
-  const std::string& place = index.places()[number];
+std::string sheet_html(const PageModel& model, const PageIndex& index, std::size_t number,
+                       const TestSheet& test, bool states) {
   std::vector<HtmlColumn> columns{{"conductor"}, {"to"}};
   for (const std::string& name : index.instruments()) columns.push_back({name + " reads", true});
   for (const char* name : {"stop at", "measured", "with", "time, by"}) columns.push_back({name});
   HtmlTable table(
-      "What each instrument should read at " + place + " if it is coupling only, as the drawing has it",
+      "What each instrument should read at " + test.place + " if it is coupling only, as the drawing has it",
       columns);
-  std::vector<std::string> fed, grounded;
-  for (const Here& one : here) {
-    if (!summed_up(*one.conductor))
-      add_rows(table, index, one.number, *one.conductor, *one.place);
-    else
-      (one.conductor->condition == Condition::grounded ? grounded : fed).push_back(one.conductor->id);
+  for (const TestRow& row : test.rows) {
+    std::vector<std::string> cells{index.link_to(row.number), html(row.reference)};
+    for (const std::string& name : index.instruments())
+      cells.push_back(reading_text({row.place, row.reference}, name));
+    cells.insert(cells.end(), {html(row.stop), "", "", ""});
+    table.add(cells);
   }
-  std::string out = heading(model, place, number);
+  std::string out = heading(model, test.place, number);
   out += table.empty() ? "<p>Nothing here but what is fed or grounded by wire as drawn.</p>\n"
-                       : scroll_box("Test sheet of " + place, table.text());
-  out += names("Fed here as drawn, live:", fed) +
-         names("Grounded here, if the drawing is right; test as live:", grounded);
+                       : scroll_box("Test sheet of " + test.place, table.text());
+  out += names("Fed here as drawn, live:", test.fed) +
+         names("Grounded here, if the drawing is right; test as live:", test.grounded);
   out += "<p class=small><b>Breakers and switches as assumed:</b> " +
          (states ? html(states_in_words(model.findings))
                  : std::string(
@@ -108,41 +57,30 @@ std::string sheet(const PageModel& model, const PageIndex& index, std::size_t nu
 }  // namespace
 
 std::string page_tests(const PageModel& model, const PageIndex& index, std::size_t room) {
-  std::vector<std::vector<Here>> at(index.places().size());
-  std::vector<bool> flagged(at.size(), false);
-  for (std::size_t k = 0; k < model.findings.conductors.size(); ++k) {
-    const ConductorFindings& conductor = model.findings.conductors[k];
-    for (const PlaceFindings& place : conductor.places) {
-      const auto number = static_cast<std::size_t>(index.place_number(place.place));
-      at[number].push_back({&conductor, &place, k});
-      if (conductor.misleads != Misleads::no) flagged[number] = true;
-    }
-  }
-  const bool states = states_in_words(model.findings).size() * at.size() < room / 3;
-  std::vector<std::string> sheets(at.size());
-  std::vector<std::string> left_out;
-  std::size_t used = 0;
+  const std::vector<TestSheet> tests = test_sheets(model, index);
+  const bool states = states_in_words(model.findings).size() * tests.size() < room / 3;
+  std::vector<std::string> sheets(tests.size());
+  std::size_t used = 0, left_out = 0;
   for (const bool first : {true, false})
-    for (std::size_t k = 0; k < at.size(); ++k) {
-      if (flagged[k] != first) continue;
-      std::string one = sheet(model, index, k, at[k], states);
-      if (used + one.size() > room) {
-        left_out.push_back(index.places()[k]);
+    for (std::size_t k = 0; k < tests.size(); ++k) {
+      if (tests[k].flagged != first) continue;
+      sheets[k] = sheet_html(model, index, k, tests[k], states);
+      if (used + sheets[k].size() > room) {
+        ++left_out;
         // What links here must lead somewhere.
-        one = fmt::format("<p id=t{} class=small>{}: left out to keep the page small.</p>\n", k,
-                          html(left_out.back()));
+        sheets[k] = fmt::format("<p id=t{} class=small>{}: left out to keep the page small.</p>\n", k,
+                                html(tests[k].place));
       }
-      used += one.size();
-      sheets[k] = one;
+      used += sheets[k].size();
     }
   std::string out =
       "<section id=tests aria-labelledby=tests-h><h2 id=tests-h>Test sheets</h2>\n<p>One a place, each on a "
-      "page of its "
-      "own in print. Stop at the value named: from there on coupling does not explain it.</p>\n";
-  if (!left_out.empty())
+      "page of "
+      "its own in print. Stop at the value named: from there on coupling does not explain it.</p>\n";
+  if (left_out > 0)
     out += fmt::format(
-        "<p>{} places have no sheet here, to keep the page small; --csv has their readings.</p>\n",
-        left_out.size());
+        "<p>{} places have no sheet here, to keep the page small; <code>--xlsx</code> has them.</p>\n",
+        left_out);
   for (const std::string& one : sheets) out += one;
   return out + "</section>\n";
 }

@@ -3,6 +3,7 @@
 #include <algorithm>
 #include <deque>
 #include <map>
+#include <ranges>
 #include <set>
 
 namespace io {
@@ -92,7 +93,7 @@ class Forest {
         row = std::max(row, one.row + 1.0 + k_lane * std::max(0, one.lanes - 1));
       } else {
         todo.emplace_back(node, true);
-        for (auto child = below.rbegin(); child != below.rend(); ++child) todo.emplace_back(*child, false);
+        for (const std::size_t child : below | std::views::reverse) todo.emplace_back(child, false);
       }
     }
   }

@@ -1,9 +1,11 @@
-"""Every format says the same: the figures of --html are those of --json, and each is found again.
+"""Every format says the same: the figures of --html, --xlsx and --csv are those of --json.
 
 The words for figures are made anew here, so that the page is not held against its own writer.
 """
 
+import csv
 import html.parser
+import io
 import json
 import math
 import os
@@ -12,6 +14,8 @@ import re
 import subprocess
 import tempfile
 import unittest
+import xml.etree.ElementTree
+import zipfile
 
 import tree
 
@@ -91,6 +95,43 @@ class Page(html.parser.HTMLParser):
             self.caption.append(data)
 
 
+class Workbook:
+    """The sheets of an XLSX file by name, each a list of rows of texts and numbers; and whether it computes."""
+
+    SPACE = "{http://schemas.openxmlformats.org/spreadsheetml/2006/main}"
+
+    def __init__(self, path):
+        with zipfile.ZipFile(path) as file:
+            parts = {name: file.read(name) for name in file.namelist() if name.endswith(".xml")}
+        self.computes = any(b"<f>" in part or b"<f " in part for part in parts.values())
+        shared = [("".join(t.text or "" for t in one.iter(self.SPACE + "t")))
+                  for one in xml.etree.ElementTree.fromstring(parts["xl/sharedStrings.xml"])]
+        book = xml.etree.ElementTree.fromstring(parts["xl/workbook.xml"])
+        names = [one.get("name") for one in book.iter(self.SPACE + "sheet")]
+        self.sheets = {}
+        for k, name in enumerate(names, 1):
+            root = xml.etree.ElementTree.fromstring(parts[f"xl/worksheets/sheet{k}.xml"])
+            self.sheets[name] = [self.row(one, shared) for one in root.iter(self.SPACE + "row")]
+
+    def row(self, row, shared):
+        cells = {}
+        for cell in row:
+            letters = re.match("[A-Z]+", cell.get("r")).group()
+            column = 0
+            for letter in letters:
+                column = 26 * column + ord(letter) - 64
+            value = cell.find(self.SPACE + "v")
+            if value is not None:
+                cells[column - 1] = shared[int(value.text)] if cell.get("t") == "s" else float(value.text)
+        return [cells.get(k, "") for k in range(max(cells, default=-1) + 1)]
+
+    def records(self, name, first):
+        """The rows of a table as dictionaries; `first` is its first head."""
+        rows = self.sheets[name]
+        start = next(k for k, row in enumerate(rows) if row and row[0] == first)
+        return [dict(zip(rows[start], row)) for row in rows[start + 1:]]
+
+
 def table(page, start):
     return next(rows for caption, tables in page.tables.items() for rows in tables if caption.startswith(start))
 
@@ -98,13 +139,16 @@ def table(page, start):
 class Formats(unittest.TestCase):
     @classmethod
     def setUpClass(cls):
-        cls.results = {}
+        cls.results, cls.books, cls.csv = {}, {}, {}
         with tempfile.TemporaryDirectory() as folder:
             for name in MODELS:
                 page, findings = pathlib.Path(folder) / "page.html", pathlib.Path(folder) / "findings.json"
+                book, rows = pathlib.Path(folder) / "book.xlsx", pathlib.Path(folder) / "rows.csv"
                 model = str(tree.TOP / "examples" / f"{name}.yaml")
                 subprocess.run([os.environ["IDLEWIRE"], "predict", model, "--quiet", "--html", str(page), "--json",
-                                str(findings)], check=True, capture_output=True)
+                                str(findings), "--xlsx", str(book), "--csv", str(rows)], check=True, capture_output=True)
+                cls.books[name] = Workbook(book)
+                cls.csv[name] = list(csv.DictReader(io.StringIO(rows.read_text("utf-8"), newline="")))
                 cls.results[name] = (Page(page.read_text("utf-8")), json.loads(findings.read_text("utf-8")))
 
     def test_the_ranked_list_says_what_the_json_says(self):
@@ -156,6 +200,60 @@ class Formats(unittest.TestCase):
             self.assertEqual(len(page.ids), len(set(page.ids)), name)
             self.assertTrue(all(link.startswith("#") and link[1:] in page.ids for link in page.links), name)
             self.assertEqual(page.fetches, [], name)
+
+    def test_the_workbook_says_what_the_json_and_the_csv_say(self):
+        for name, (_, findings) in self.results.items():
+            book = self.books[name]
+            ranked = book.records("Ranked list", "rank")
+            self.assertEqual([r["conductor"] for r in ranked], [c["id"] for c in findings["conductors"]], name)
+            self.assertEqual([r["rank"] or None for r in ranked], [c["rank"] for c in findings["conductors"]])
+            # Spreadsheets keep fifteen digits, the file format sixteen.
+            close = lambda a, b: self.assertTrue(math.isclose(a, b, rel_tol=1e-15, abs_tol=1e-300), (a, b))
+            sheets = iter(book.records("Sheets", "conductor"))
+            readings, rows = iter(book.records("Readings", "conductor")), iter(self.csv[name])
+            for c in findings["conductors"]:
+                for p in c["places"]:
+                    sheet = next(sheets)
+                    self.assertEqual((sheet["conductor"], sheet["at"]), (c["id"], p["place"]))
+                    close(sheet["open circuit (V)"], p["open_circuit"]["volts"])
+                    close(sheet["source impedance (ohm)"], p["source_impedance"]["ohms"])
+                    close(sheet["short circuit, computed (A)"], p["short_circuit_A"])
+                    for r in p["readings"]:
+                        given, row = next(readings), next(rows)
+                        self.assertEqual((given["conductor"], given["instrument"], given["to"], given["appearance"]),
+                                         (c["id"], r["instrument"], r["reference"], r["appearance"]))
+                        close(given["reading (V)"], r["volts"])
+                        self.assertEqual((row["conductor"], row["instrument"], float(row["reading_V"])),
+                                         (c["id"], r["instrument"], r["volts"]))
+            self.assertEqual((list(sheets), list(readings), list(rows)), ([], [], []))
+
+    def test_every_sheet_of_the_workbook_carries_the_caution(self):
+        for name, book in self.books.items():
+            self.assertEqual(list(book.sheets), ["Ranked list", "Sheets", "Readings", "Contributions", "Test sheets",
+                                                 "Notes"])
+            for sheet, rows in book.sheets.items():
+                text = " ".join(str(cell) for row in rows for cell in row)
+                self.assertIn("A prediction is not a test.", text, (name, sheet))
+                self.assertIn("A reading that agrees with this sheet proves nothing. Void once", text, (name, sheet))
+            if name.startswith("03"):
+                text = str(book.sheets["Test sheets"])
+                self.assertIn("isolated supply: no reading to ground settles it; treat as live", text)
+
+    def test_text_that_looks_like_a_formula_stays_text(self):
+        source = (tree.TOP / "examples" / "01-one-circuit" / "emt.yaml").read_text("utf-8")
+        planted = {"spare-1:": "'=1+1':", "Store room": "'=SUM(A1)'", "title: ": "title: '+1' #", "C1": "-2-3"}
+        for old, new in planted.items():
+            self.assertIn(old, source)
+            source = source.replace(old, new)
+        with tempfile.TemporaryDirectory() as folder:
+            model, book = pathlib.Path(folder) / "model.yaml", pathlib.Path(folder) / "book.xlsx"
+            model.write_text(source, "utf-8")
+            subprocess.run([os.environ["IDLEWIRE"], "predict", str(model), "--quiet", "--xlsx", str(book)], check=True,
+                           capture_output=True)
+            made = Workbook(book)
+        self.assertFalse(made.computes)
+        cells = {cell for rows in made.sheets.values() for row in rows for cell in row}
+        self.assertLessEqual({"=1+1.a", "=SUM(A1)", "+1", "-2-3.raceway"}, cells)
 
 
 if __name__ == "__main__":
