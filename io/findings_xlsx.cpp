@@ -2,10 +2,12 @@
 
 #include <algorithm>
 #include <cmath>
+#include <cstdlib>
 #include <numbers>
 
 #include "io/findings_view.h"
 #include "io/test_rows.h"
+#include "io/text_layout.h"
 #include "io/workbook.h"
 
 namespace io {
@@ -13,6 +15,11 @@ namespace {
 using netlists::ConductorFindings;
 using netlists::PlaceFindings;
 using netlists::Reading;
+
+/// A limit in volts that must not be overstated: three digits, rounded down.
+double limit(double volts) {
+  return std::isfinite(volts) ? std::strtod(limit_text(volts).c_str(), nullptr) : volts;
+}
 
 constexpr int k_columns = 10;  // that the caution is laid over
 
@@ -37,7 +44,8 @@ std::string condition_text(const ConductorFindings& conductor) {
 Cell reading_cell(const Focus& at, const std::string& instrument) {
   if (at.place == nullptr) return {std::string()};
   for (const Reading& reading : at.place->readings)
-    if (reading.instrument == instrument && reading.reference == at.reference) return {reading.volts};
+    if (reading.instrument == instrument && reading.reference == at.reference)
+      return {reading.volts, CellLook::volts};
   return {std::string()};
 }
 
@@ -47,7 +55,7 @@ void add_ranked(Workbook& book, const PageModel& model, const PageIndex& index) 
   std::vector<std::string> heads{"rank", "conductor", "panel", "at", "to", "condition", "verdict"};
   for (const std::string& name : index.instruments()) {
     heads.push_back(name + " (V)");
-    widths.push_back(12);
+    widths.push_back(std::max(10.0, 1.2 * static_cast<double>(name.size())));
   }
   for (const char* head :
        {"source impedance (ohm)", "short circuit, computed (A)", "settled by", "treat as live above (V)"}) {
@@ -67,10 +75,12 @@ void add_ranked(Workbook& book, const PageModel& model, const PageIndex& index) 
         {condition_text(conductor)},
         {conductor.misleads == netlists::Misleads::no ? "not flagged" : to_string(conductor.misleads)}};
     for (const std::string& name : index.instruments()) row.push_back(reading_cell(at, name));
-    row.push_back(at.place == nullptr ? Cell{std::string()} : Cell{std::abs(at.place->source_impedance)});
-    row.push_back(at.place == nullptr ? Cell{std::string()} : Cell{at.place->short_circuit});
+    row.push_back(at.place == nullptr ? Cell{std::string()}
+                                      : Cell{std::abs(at.place->source_impedance), CellLook::ohms});
+    row.push_back(at.place == nullptr ? Cell{std::string()}
+                                      : Cell{at.place->short_circuit, CellLook::amperes});
     row.push_back({conductor.settle.instrument.value_or("")});
-    row.push_back(conductor.settle.instrument ? Cell{conductor.settle.treat_as_live_above}
+    row.push_back(conductor.settle.instrument ? Cell{limit(conductor.settle.treat_as_live_above)}
                                               : Cell{std::string()});
     sheet.add(row);
   }
@@ -89,11 +99,11 @@ void add_sheets(Workbook& book, const PageModel& model) {
           {{conductor.id},
            {place.place},
            {place.reference},
-           {std::abs(place.open_circuit)},
-           {degrees(place.open_circuit)},
-           {std::abs(place.source_impedance)},
-           {degrees(place.source_impedance)},
-           {place.short_circuit},
+           {std::abs(place.open_circuit), CellLook::volts},
+           {degrees(place.open_circuit), CellLook::degrees},
+           {std::abs(place.source_impedance), CellLook::ohms},
+           {degrees(place.source_impedance), CellLook::degrees},
+           {place.short_circuit, CellLook::amperes},
            {condition_text(conductor)},
            {conductor.misleads == netlists::Misleads::no ? "not flagged" : to_string(conductor.misleads)},
            {settle_in_words(conductor)}});
@@ -113,7 +123,7 @@ void add_readings(Workbook& book, const PageModel& model) {
                    {reading.instrument},
                    {reading.reference},
                    reading.range ? Cell{*reading.range} : Cell{std::string()},
-                   {reading.volts},
+                   {reading.volts, CellLook::volts},
                    {to_string(reading.appearance)},
                    {std::string(reading.judged ? "yes" : "no")}});
   sheet.end_table();
@@ -130,8 +140,8 @@ void add_contributions(Workbook& book, const PageModel& model) {
                    {place.place},
                    {entry.from},
                    {entry.path},
-                   {std::abs(entry.volts)},
-                   {degrees(entry.volts)}});
+                   {std::abs(entry.volts), CellLook::volts},
+                   {degrees(entry.volts), CellLook::degrees}});
   sheet.end_table();
 }
 
@@ -173,7 +183,7 @@ void add_tests(Workbook& book, const PageModel& model, const PageIndex& index) {
   Worksheet sheet = book.add_sheet("Test sheets");
   sheet.set_print(true, "A prediction is not a test. " + sheet_warning());
   std::vector<double> widths{22, 18};
-  for (std::size_t k = 0; k < index.instruments().size(); ++k) widths.push_back(14);
+  for (std::size_t k = 0; k < index.instruments().size(); ++k) widths.push_back(16);
   widths.insert(widths.end(), {26, 14, 14, 14});
   sheet.set_widths(widths);
   for (const TestSheet& test : test_sheets(model, index)) add_test_sheet(sheet, model, index, test);

@@ -20,6 +20,7 @@ namespace {
 
 constexpr std::size_t k_longest = 32'000;  // bytes in a cell; the format ends at 32767 letters
 constexpr std::size_t k_longest_property = 200;
+constexpr double k_line = 15.0;  // points
 constexpr lxw_row_t k_last_row = LXW_ROW_MAX - 1;
 
 /// Text as a cell can hold it: no control characters, not cut inside a letter.
@@ -31,12 +32,30 @@ std::string cell_text(const std::string& text, std::size_t longest = k_longest) 
   return out.substr(0, end) + "...";
 }
 
+/// Two or three digits over the sizes that occur; null for what is no figure.
+const char* number_format(CellLook look) {
+  switch (look) {
+    case CellLook::volts:
+      return "[>=10]0;[>=1]0.0;0.000";
+    case CellLook::ohms:
+      return "[>=1000]#,##0;[>=1]0.0;0.000";
+    case CellLook::amperes:
+      return "[>=1]0.0;[>=0.0001]0.00000;0.0E+00";
+    case CellLook::degrees:
+      return "0.0";
+    default:
+      return nullptr;
+  }
+}
+
 lxw_format* format_of(lxw_workbook* book, CellLook look) {
   lxw_format* format = workbook_add_format(book);
   format_set_align(format, LXW_ALIGN_VERTICAL_TOP);
   if (look == CellLook::title) format_set_font_size(format, 14);
   if (look == CellLook::title || look == CellLook::head || look == CellLook::caution) format_set_bold(format);
-  if (look != CellLook::plain && look != CellLook::title) format_set_text_wrap(format);
+  const bool wraps = look == CellLook::head || look == CellLook::wrapped || look == CellLook::caution;
+  if (wraps) format_set_text_wrap(format);
+  if (const char* digits = number_format(look)) format_set_num_format(format, digits);
   if (look == CellLook::head) format_set_bottom(format, LXW_BORDER_MEDIUM);
   if (look == CellLook::blank_to_fill) format_set_border(format, LXW_BORDER_THIN);
   return format;
@@ -137,13 +156,14 @@ void Worksheet::add_wide(const std::string& text, int columns, CellLook look, in
   State::require(worksheet_merge_range(state_->sheet, state_->row, 0, state_->row,
                                        static_cast<lxw_col_t>(columns - 1), cell_text(text).c_str(),
                                        state_->format(look)));
-  State::require(worksheet_set_row(state_->sheet, state_->row, 15.0 * lines, nullptr));
+  State::require(worksheet_set_row(state_->sheet, state_->row, k_line * lines, nullptr));
   ++state_->row;
 }
 
 void Worksheet::add_plain_heads(const std::vector<std::string>& heads) {
   std::vector<Cell> cells;
   for (const std::string& head : heads) cells.push_back({head, CellLook::head});
+  State::require(worksheet_set_row(state_->sheet, state_->row, k_line * 3, nullptr));
   add(cells);
 }
 
@@ -177,8 +197,9 @@ Workbook::Workbook(const std::string& title, const std::string& date) : state_(s
   properties.title = clean.data();
   properties.created = seconds_of(date);
   Worksheet::State::require(workbook_set_properties(state_->book, &properties));
-  for (const CellLook look : {CellLook::plain, CellLook::title, CellLook::head, CellLook::wrapped,
-                              CellLook::caution, CellLook::blank_to_fill})
+  for (const CellLook look :
+       {CellLook::plain, CellLook::title, CellLook::head, CellLook::wrapped, CellLook::caution,
+        CellLook::blank_to_fill, CellLook::volts, CellLook::ohms, CellLook::amperes, CellLook::degrees})
     state_->formats[look] = format_of(state_->book, look);
 }
 
