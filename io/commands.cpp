@@ -12,12 +12,14 @@
 #include "io/check_report.h"
 #include "io/findings_xlsx.h"
 #include "io/page.h"
+#include "io/progress.h"
 #include "io/section_file.h"
 #include "io/terminal.h"
 #include "io/text_layout.h"
 #include "io/writers.h"
 #include "netlists/judge.h"
 #include "netlists/lower.h"
+#include "netlists/meter.h"
 #include "netlists/stage.h"
 
 namespace io {
@@ -84,6 +86,11 @@ engine::SolvedNetwork solved(const netlists::Lowered& lowered) {
   return network;
 }
 
+/// The bar that shows how far slow work has come, while it lives.
+Progress progress_of(const CommandOptions& options) {
+  return Progress(messages_on_terminal() && !options.quiet, message_width());
+}
+
 /// The findings with what they were found from.
 struct Predicted {
   Building building;  // in the stage
@@ -94,8 +101,10 @@ struct Predicted {
 Predicted predicted(const CommandOptions& options) {
   Predicted out;
   const Building building = read_building(options);
+  const Progress progress = progress_of(options);
   out.network = lowered(building, options);
   out.building = netlists::in_stage(building, options.stage);
+  netlists::meter().begin("network and readings", 0);
   out.findings = netlists::judge(building, out.network, solved(out.network));
   out.findings.program_version = IDLEWIRE_VERSION;
   out.findings.stage = netlists::stage_name(building, options.stage);

@@ -29,6 +29,14 @@ bool output_colour() {
   return ::isatty(STDOUT_FILENO) == 1 && environment("NO_COLOR").empty() && environment("TERM") != "dumb";
 }
 
+bool messages_on_terminal() { return ::isatty(STDERR_FILENO) == 1 && environment("TERM") != "dumb"; }
+
+int message_width() {
+  winsize size{};
+  if (::ioctl(STDERR_FILENO, TIOCGWINSZ, &size) != 0 || size.ws_col == 0) return 79;
+  return size.ws_col - 1;  // a full line would wrap
+}
+
 std::string today() {
   const std::string fixed = environment("SOURCE_DATE_EPOCH");
   std::tm parts{};

@@ -7,6 +7,7 @@
 #include <stdexcept>
 
 #include "netlists/lowering.h"
+#include "netlists/meter.h"
 
 namespace netlists {
 namespace {
@@ -19,6 +20,7 @@ void Lowering::add_lines() {
   std::vector<double> taken(building_.runs.size(), 0.0);  // m, of each run, from `begin`
   std::vector<std::string> begin(building_.runs.size());
   for (std::size_t r = 0; r < building_.runs.size(); ++r) begin[r] = building_.runs[r].from.text;
+  meter().begin("cross-sections", static_cast<int>(building_.runs.size() + building_.alongside.size()));
   for (const Alongside& group : building_.alongside) add_joint(group, taken, begin);
   for (std::size_t r = 0; r < building_.runs.size(); ++r) {
     const Run& run = building_.runs[r];
@@ -89,6 +91,7 @@ int Lowering::row_point(const StretchRow& row, const std::string& place) {
 }
 
 void Lowering::add_piece(const Piece& piece) {
+  meter().step();
   const std::vector<StretchRow> rows = sections_.rows(piece.stretch);
   if (rows.empty()) return;
   engine::Line line;
