@@ -46,12 +46,11 @@ std::string facts(const PageModel& model) {
   return out + "</dl>\n";
 }
 
-std::string header(const PageModel& model, bool effects) {
+std::string header(const PageModel& model, bool effects, bool fed) {
   const std::string links = fmt::format(
       "<ul><li><a href=#list>Ranked list</a><li><a href=#plan>Plan</a>{}<li><a href=#sheets>Sheets</a>"
-      "<li><a href=#tests>Test sheets</a><li><a href=#fed>Fed as drawn</a><li><a "
-      "href=#appendix>Appendix</a></ul>",
-      effects ? "<li><a href=#currents>Currents</a>" : "");
+      "<li><a href=#tests>Test sheets</a>{}<li><a href=#appendix>Appendix</a></ul>",
+      effects ? "<li><a href=#currents>Currents</a>" : "", fed ? "<li><a href=#fed>Fed as drawn</a>" : "");
   return fmt::format(
       "<header>\n<p class=kicker>Predicted readings of conductors</p>\n<h1>{}</h1>\n<p "
       "class=verdict>{}</p>\n{}"
@@ -107,7 +106,7 @@ std::string report_page(const PageModel& model) {
   const std::string effects = page_effects(model.findings);
   const std::string fed = page_fed(model, k_fed_room);
   const std::string ends = page_appendix(model);
-  const std::string head = top(model) + header(model, !effects.empty());
+  const std::string head = top(model) + header(model, !effects.empty(), !fed.empty());
   const auto before = [&] {
     return page_list(model, index, k_list_room) + page_plan(model, index) + effects;
   };
