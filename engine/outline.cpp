@@ -70,11 +70,17 @@ double room_inside(const Outline& holder, const Outline& held) {
   return -(farthest + held.rounding);
 }
 
-double lowest(const Outline& outline) {
-  double least = std::numeric_limits<double>::infinity();
-  for (const Vector2d& corner : outline.corners()) least = std::min(least, corner.y());
-  return least - outline.rounding;
+std::array<Vector2d, 2> bounds(const Outline& outline) {
+  const auto corners = outline.corners();
+  Vector2d low = corners[0], high = corners[0];
+  for (const Vector2d& corner : corners) {
+    low = low.cwiseMin(corner);
+    high = high.cwiseMax(corner);
+  }
+  return {low.array() - outline.rounding, high.array() + outline.rounding};
 }
+
+double lowest(const Outline& outline) { return bounds(outline)[0].y(); }
 
 double farthest(const Outline& outline, const Vector2d& origin) {
   double most = 0.0;

@@ -20,6 +20,15 @@ struct Outline {
   std::array<Eigen::Vector2d, 4> corners() const;
 };
 
+/// Of what a body or a shell is bounded by.
+inline Outline outer_outline(const Body& body) { return {body.centre, body.core, body.outer_radius}; }
+inline Outline inner_outline(const Body& body) { return {body.centre, body.core, body.inner_radius}; }
+inline Outline metal_outline(const Shell& shell) { return {shell.centre, shell.core, shell.outer_radius}; }
+inline Outline covered_outline(const Shell& shell) {
+  return {shell.centre, shell.core, shell.covered_radius()};
+}
+inline Outline inner_outline(const Shell& shell) { return {shell.centre, shell.core, shell.inner_radius}; }
+
 /// Of a point from the outline in m, negative inside.
 double signed_distance(const Outline& outline, const Eigen::Vector2d& point);
 
@@ -28,6 +37,9 @@ double gap_between(const Outline& a, const Outline& b);
 
 /// The least distance from the rim of `held` to that of `holder` around it, m; negative where it sticks out.
 double room_inside(const Outline& holder, const Outline& held);
+
+/// The upright rectangle around the outline: its lower left and upper right corners, m.
+std::array<Eigen::Vector2d, 2> bounds(const Outline& outline);
 
 /// Height of the lowest point, m.
 double lowest(const Outline& outline);

@@ -3,8 +3,10 @@
 #include <fmt/format.h>
 
 #include <algorithm>
+#include <numbers>
 #include <stdexcept>
 
+#include "engine/outline.h"
 #include "io/page_html.h"
 
 namespace io {
@@ -17,28 +19,36 @@ constexpr double k_unit = 1e5;  // drawing units a metre: ten micrometres are on
 struct Frame {
   double left = 1e30, right = -1e30, top = 1e30, bottom = -1e30;
 
-  void take(const Eigen::Vector2d& centre, double radius) {
-    left = std::min(left, (centre.x() - radius) * k_unit);
-    right = std::max(right, (centre.x() + radius) * k_unit);
-    top = std::min(top, (-centre.y() - radius) * k_unit);
-    bottom = std::max(bottom, (-centre.y() + radius) * k_unit);
+  void take(const engine::Outline& outline) {
+    const auto [low, high] = engine::bounds(outline);
+    left = std::min(left, low.x() * k_unit);
+    right = std::max(right, high.x() * k_unit);
+    top = std::min(top, -high.y() * k_unit);
+    bottom = std::max(bottom, -low.y() * k_unit);
   }
 };
 
 Frame frame_of(const CrossSection& section) {
   Frame frame;
-  for (const auto& conductor : section.conductors) frame.take(conductor.centre, conductor.outer_radius());
-  for (const auto& body : section.bodies) frame.take(body.centre, body.outer_radius);
-  for (const auto& shell : section.shells) frame.take(shell.centre, shell.covered_radius());
+  for (const auto& conductor : section.conductors)
+    frame.take({conductor.centre, {}, conductor.outer_radius()});
+  for (const auto& body : section.bodies) frame.take(engine::outer_outline(body));
+  for (const auto& shell : section.shells) frame.take(engine::covered_outline(shell));
   // The plane is drawn where it is near; a run far above it would be a speck.
   if (frame.bottom < 0 && -frame.bottom < 0.3 * (frame.bottom - frame.top)) frame.bottom = 0;
   const double margin = 0.05 * std::max(frame.right - frame.left, frame.bottom - frame.top);
   return {frame.left - margin, frame.right + margin, frame.top - margin, frame.bottom + margin};
 }
 
-std::string disc(const char* kind, const Eigen::Vector2d& centre, double radius) {
-  return fmt::format("<circle class={} cx={} cy={} r={} />", kind, px(centre.x() * k_unit),
-                     px(-centre.y() * k_unit), px(radius * k_unit));
+std::string shape(const char* kind, const engine::Outline& o) {
+  const std::string x = px(o.centre.x() * k_unit), y = px(-o.centre.y() * k_unit);
+  if (o.is_circle())
+    return fmt::format("<circle class={} cx={} cy={} r={} />", kind, x, y, px(o.rounding * k_unit));
+  const Eigen::Vector2d half = (o.core.half_size.array() + o.rounding) * k_unit;
+  return fmt::format(
+      "<rect class={} x={} y={} width={} height={} rx={} transform=\"translate({} {}) rotate({:.3g})\" />",
+      kind, px(-half.x()), px(-half.y()), px(2 * half.x()), px(2 * half.y()), px(o.rounding * k_unit), x, y,
+      -o.core.turn * 180 / std::numbers::pi);
 }
 
 /// Discs of one size in one path: a stroke of no length with a round end is a disc.
@@ -60,12 +70,12 @@ std::string content(const CrossSection& section, const Frame& frame) {
     out += fmt::format("<path class=sp stroke-width={} d=\"M{} 0H{}\" />",
                        px((frame.bottom - frame.top) / 60), px(frame.left), px(frame.right));
   for (const auto& shell : section.shells) {
-    if (!shell.layers.empty()) out += disc("sj", shell.centre, shell.covered_radius());
-    out += disc("sm", shell.centre, shell.outer_radius) + disc("sa", shell.centre, shell.inner_radius);
+    if (!shell.layers.empty()) out += shape("sj", engine::covered_outline(shell));
+    out += shape("sm", engine::metal_outline(shell)) + shape("sa", engine::inner_outline(shell));
   }
   for (const auto& body : section.bodies)
-    out += disc("sj", body.centre, body.outer_radius) +
-           disc(body.filler.permittivity > 1.0 ? "sf" : "sa", body.centre, body.inner_radius);
+    out += shape("sj", engine::outer_outline(body)) +
+           shape(body.filler.permittivity > 1.0 ? "sf" : "sa", engine::inner_outline(body));
   std::map<std::string, std::string> insulation, metal;
   for (const auto& conductor : section.conductors) {
     if (!conductor.layers.empty()) add_dot(insulation, conductor.centre, conductor.outer_radius());
@@ -90,7 +100,7 @@ Spot spot_of(const netlists::RunSection& section, const std::string& conductor) 
     const auto& wires = section.section.conductors;
     if (k < wires.size()) return {wires[k].centre, wires[k].outer_radius(), false};
     const auto& shell = section.section.shells[k - wires.size()];
-    return {shell.centre, shell.outer_radius, true};
+    return {shell.centre, shell.core.half_size.y() + shell.outer_radius, true};
   }
   return {};
 }

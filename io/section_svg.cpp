@@ -1,10 +1,12 @@
 #include <fmt/format.h>
 
 #include <algorithm>
+#include <numbers>
 #include <string>
 #include <vector>
 
-#include "engine/cross_section.h"
+#include "engine/nesting.h"
+#include "engine/outline.h"
 #include "io/writers.h"
 
 namespace io {
@@ -21,22 +23,24 @@ struct Frame {
   double left = 0, right = 0, bottom = 0, top = 0;
   bool empty = true;
 
-  void take(const Eigen::Vector2d& centre, double radius) {
-    left = empty ? centre.x() - radius : std::min(left, centre.x() - radius);
-    right = empty ? centre.x() + radius : std::max(right, centre.x() + radius);
-    bottom = empty ? centre.y() - radius : std::min(bottom, centre.y() - radius);
-    top = empty ? centre.y() + radius : std::max(top, centre.y() + radius);
+  void take(const engine::Outline& outline) {
+    const auto [low, high] = engine::bounds(outline);
+    left = empty ? low.x() : std::min(left, low.x());
+    right = empty ? high.x() : std::max(right, high.x());
+    bottom = empty ? low.y() : std::min(bottom, low.y());
+    top = empty ? high.y() : std::max(top, high.y());
     empty = false;
   }
 };
 
 Frame frame_of(const CrossSection& section) {
   Frame frame;
-  for (const auto& conductor : section.conductors) frame.take(conductor.centre, conductor.outer_radius());
-  for (const auto& body : section.bodies) frame.take(body.centre, body.outer_radius);
-  for (const auto& shell : section.shells) frame.take(shell.centre, shell.covered_radius());
+  for (const auto& conductor : section.conductors)
+    frame.take({conductor.centre, {}, conductor.outer_radius()});
+  for (const auto& body : section.bodies) frame.take(engine::outer_outline(body));
+  for (const auto& shell : section.shells) frame.take(engine::covered_outline(shell));
   if (section.surroundings == Surroundings::metal_tube)
-    frame.take(Eigen::Vector2d::Zero(), section.tube_outer_radius);
+    frame.take({Eigen::Vector2d::Zero(), section.tube_core, section.tube_outer_radius});
   if (section.surroundings == Surroundings::plane) frame.bottom = std::min(frame.bottom, 0.0);
   const double margin = 0.04 * std::max({frame.right - frame.left, frame.top - frame.bottom, 1e-6});
   frame.left -= margin;
@@ -61,6 +65,15 @@ class Paper {
         "<circle cx=\"{:.3f}\" cy=\"{:.3f}\" r=\"{:.3f}\" fill=\"{}\" stroke=\"black\" "
         "stroke-width=\"0.2\"/>\n",
         x(centre), y(centre.y()), radius * scale_, fill);
+  }
+  void outline(const engine::Outline& o, const char* fill) {
+    if (o.is_circle()) return circle(o.centre, o.rounding, fill);
+    const Eigen::Vector2d half = (o.core.half_size.array() + o.rounding) * scale_;
+    text_ += fmt::format(
+        "<rect x=\"{:.3f}\" y=\"{:.3f}\" width=\"{:.3f}\" height=\"{:.3f}\" rx=\"{:.3f}\" fill=\"{}\" "
+        "stroke=\"black\" stroke-width=\"0.2\" transform=\"translate({:.3f} {:.3f}) rotate({:.4f})\"/>\n",
+        -half.x(), -half.y(), 2 * half.x(), 2 * half.y(), o.rounding * scale_, fill, x(o.centre),
+        y(o.centre.y()), -o.core.turn * 180 / std::numbers::pi);
   }
   void number(const Eigen::Vector2d& centre, double radius, std::size_t k) {
     const double size = std::clamp(radius * scale_, 1.2, k_text);
@@ -110,17 +123,17 @@ void draw_covered(Paper& paper, const Eigen::Vector2d& centre, const std::vector
 void draw(Paper& paper, const CrossSection& section) {
   if (section.surroundings == Surroundings::plane) paper.ground_line();
   if (section.surroundings == Surroundings::metal_tube) {
-    paper.circle(Eigen::Vector2d::Zero(), section.tube_outer_radius, "#808080");
-    paper.circle(Eigen::Vector2d::Zero(), section.tube_inner_radius, "white");
+    paper.outline({Eigen::Vector2d::Zero(), section.tube_core, section.tube_outer_radius}, "#808080");
+    paper.outline(engine::tube_outline(section), "white");
   }
   for (const auto& body : section.bodies) {
-    paper.circle(body.centre, body.outer_radius, "#eeeeee");
-    paper.circle(body.centre, body.inner_radius, body.filler.permittivity > 1.0 ? "#f6f6f6" : "white");
+    paper.outline(engine::outer_outline(body), "#eeeeee");
+    paper.outline(engine::inner_outline(body), body.filler.permittivity > 1.0 ? "#f6f6f6" : "white");
   }
   for (const auto& shell : section.shells) {
     draw_covered(paper, shell.centre, shell.layers);
-    paper.circle(shell.centre, shell.outer_radius, "#808080");
-    paper.circle(shell.centre, shell.inner_radius, "white");
+    paper.outline(engine::metal_outline(shell), "#808080");
+    paper.outline(engine::inner_outline(shell), "white");
   }
   for (const auto& conductor : section.conductors) {
     draw_covered(paper, conductor.centre, conductor.layers);
@@ -129,7 +142,8 @@ void draw(Paper& paper, const CrossSection& section) {
   std::size_t k = 0;
   for (const auto& conductor : section.conductors) paper.number(conductor.centre, conductor.radius, ++k);
   for (const auto& shell : section.shells)
-    paper.number(shell.centre + Eigen::Vector2d(0.0, shell.outer_radius), shell.outer_radius / 4, ++k);
+    paper.number(shell.centre + Eigen::Vector2d(0.0, shell.core.half_size.y() + shell.outer_radius),
+                 shell.outer_radius / 4, ++k);
 }
 
 std::string caption(const std::vector<std::string>& lines, double top) {
