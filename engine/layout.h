@@ -16,6 +16,10 @@ namespace engine {
 std::vector<Eigen::Vector2d> resting_layout(std::span<const double> radii, double tube_radius,
                                             std::mt19937_64& random);
 
+/// The same in a rectangular raceway of this half width and half height (m), its middle the origin.
+std::vector<Eigen::Vector2d> resting_layout(std::span<const double> radii, const Eigen::Vector2d& half_size,
+                                            std::mt19937_64& random);
+
 /// Centres (m) of round things lying side by side on the line y = 0 in random order, centred on
 /// x = 0, `gap` (m, >= 1e-6) apart.
 std::vector<Eigen::Vector2d> row_layout(std::span<const double> radii, double gap, std::mt19937_64& random);

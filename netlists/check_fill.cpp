@@ -55,13 +55,16 @@ double inner_area(const RacewayType& type) {
   return type.kind == RacewayKind::wireway ? type.width * type.height : circle_area(type.inner_diameter);
 }
 
-/// Whether things can lie in a tube at all: by the routine that will lay them.
-bool can_be_packed(const std::vector<Thing>& things, double tube_diameter) {
+/// Whether things can lie in a raceway at all: by the routine that will lay them.
+bool can_be_packed(const std::vector<Thing>& things, const RacewayType& type) {
   std::vector<double> radii;
   for (const Thing& thing : things) radii.push_back(thing.diameter / 2);
   std::mt19937_64 random(1);
   try {
-    engine::resting_layout(radii, tube_diameter / 2, random);
+    if (type.kind == RacewayKind::wireway)
+      engine::resting_layout(radii, Eigen::Vector2d(type.width / 2, type.height / 2), random);
+    else
+      engine::resting_layout(radii, type.inner_diameter / 2, random);
     return true;
   } catch (const std::invalid_argument&) {
     return false;
@@ -77,13 +80,11 @@ void check_run_fill(Checks& checks, const Run& run, const std::vector<Thing>& th
   for (const Thing& thing : things) taken += circle_area(thing.diameter);
   const double fill = taken / inner_area(type);
   const double allowed = allowed_fill(type.kind, things.size());
-  const double tube = type.kind == RacewayKind::wireway ? 2 * std::sqrt(inner_area(type) / std::numbers::pi)
-                                                        : type.inner_diameter;
   constexpr double k_certain_to_fit = 0.45;  // below this a packing of round things is found at once
   constexpr std::size_t k_most_tried = 60;
   const bool try_it = things.size() <= k_most_tried && fill > k_certain_to_fit && run.layout.empty();
   const bool overfull = fill >= 1.0 || (things.size() > k_most_tried && fill >= k_densest) ||
-                        (try_it && !can_be_packed(things, tube));
+                        (try_it && !can_be_packed(things, type));
   const std::string what =
       fmt::format("run '{}': {} {} fill {:.0f} % of its '{}'", run.name.text, things.size(),
                   things.size() == 1 ? "conductor or cable" : "conductors and cables", 100 * fill, type.name);

@@ -14,6 +14,7 @@
 #include "engine/capacitance.h"
 #include "engine/impedance.h"
 #include "engine/layout.h"
+#include "engine/outline.h"
 #include "engine/strip.h"
 
 namespace netlists {
@@ -33,9 +34,10 @@ struct Item {
   std::vector<int> wires;  // cores in order, or the one loose wire
   int armour = -1;         // wire index of the cable's armour
   const CableType* cable = nullptr;
-  std::string layout_name;  // what a `layout:` entry calls it
-  std::string signature;    // equal for things of equal build
-  double radius = 0.0;      // m, of the circle it takes up
+  std::string layout_name;   // what a `layout:` entry calls it
+  std::string signature;     // equal for things of equal build
+  double radius = 0.0;       // m, of the circle it takes up
+  double half_height = 0.0;  // m, lying flat
 };
 
 engine::Dielectric dielectric(const Catalogue& catalogue, const std::string& material) {
@@ -76,8 +78,9 @@ std::uint64_t fingerprint(const std::string& text, std::uint64_t start) {
   return hash;
 }
 
-/// Layers of things side by side, each `width` wide at the most, from y = 0 upwards.
-std::vector<Eigen::Vector2d> stacked_rows(const std::vector<double>& radii, double width,
+/// Layers of things side by side, each `width` wide at the most, from y = 0 upwards. Flat things lie flat.
+std::vector<Eigen::Vector2d> stacked_rows(const std::vector<double>& radii,
+                                          const std::vector<double>& half_heights, double width,
                                           std::mt19937_64& random) {
   std::vector<Eigen::Vector2d> centres(radii.size());
   std::size_t begin = 0;
@@ -85,19 +88,39 @@ std::vector<Eigen::Vector2d> stacked_rows(const std::vector<double>& radii, doub
   while (begin < radii.size()) {
     std::size_t end = begin + 1;
     double taken = 2 * radii[begin];
-    double highest = radii[begin];
+    double highest = half_heights[begin];
     while (end < radii.size() && taken + 2 * radii[end] + k_row_gap <= width) {
       taken += 2 * radii[end] + k_row_gap;
-      highest = std::max(highest, radii[end]);
+      highest = std::max(highest, half_heights[end]);
       ++end;
     }
     const std::vector<double> row(radii.begin() + begin, radii.begin() + end);
     const auto places = engine::row_layout(row, k_row_gap, random);
-    for (std::size_t i = begin; i < end; ++i) centres[i] = {places[i - begin].x(), floor + radii[i]};
+    for (std::size_t i = begin; i < end; ++i) centres[i] = {places[i - begin].x(), floor + half_heights[i]};
     floor += 2 * highest + k_row_gap;
     begin = end;
   }
   return centres;
+}
+
+/// The jacket of a cable, a strip with round ends if it is flat. What the cores' places need of it, where
+/// a catalogue's figures contradict each other, goes before its thickness.
+engine::Body jacket_of(const CableType& cable, const Catalogue& catalogue, const Eigen::Vector2d& centre,
+                       double turn) {
+  const double thin = std::min(cable.width, cable.height) / 2;
+  engine::Body body;
+  body.centre = centre;
+  body.core = {{cable.width / 2 - thin, cable.height / 2 - thin}, turn};
+  double reach = 0.0;
+  for (const Core& core : cable.cores)
+    reach = std::max(
+        reach, core.wire.outer_diameter() / 2 +
+                   engine::signed_distance({{0.0, 0.0}, {body.core.half_size, 0.0}, 0.0}, {core.x, core.y}));
+  body.inner_radius = std::max(thin - cable.jacket_thickness, reach + k_joint_slack);
+  body.outer_radius = std::max(thin, body.inner_radius + k_joint_slack);
+  body.filler = dielectric(catalogue, cable.filler.empty() ? cable.jacket : cable.filler);
+  body.wall = dielectric(catalogue, cable.jacket);
+  return body;
 }
 
 /// Grows a CrossSection item by item. Shells come after all conductors, so they wait till the end.
@@ -114,18 +137,16 @@ class Assembly {
       return;
     }
     const CableType& cable = *item.cable;
-    double reach = 0.0;
     for (std::size_t i = 0; i < item.wires.size(); ++i) {
       const Core& core = cable.cores[i];
       const Eigen::Vector2d offset{core.x * std::cos(turn) - core.y * std::sin(turn),
                                    core.x * std::sin(turn) + core.y * std::cos(turn)};
       add_wire(item.wires[i], core.wire, centre + offset, run);
-      reach = std::max(reach, std::hypot(core.x, core.y) + core.wire.outer_diameter() / 2);
     }
     if (cable.armour) {
       add_armour(item, cable, centre, run);
     } else {
-      add_jacket(cable, centre, reach);
+      section_.bodies.push_back(jacket_of(cable, building_.catalogue, centre, turn));
     }
   }
 
@@ -138,12 +159,14 @@ class Assembly {
     section_.bodies.push_back(tube);
   }
 
-  void add_metal_tube(const RacewayType& raceway, double inner_radius, double outer_radius,
-                      const Eigen::Vector2d& centre, int run) {
+  /// A round tube, or the rectangle of a wireway.
+  void add_metal_tube(const RacewayType& raceway, const Eigen::Vector2d& centre, int run) {
+    const bool wireway = raceway.kind == RacewayKind::wireway;
     engine::Shell shell;
     shell.centre = centre;
-    shell.inner_radius = inner_radius;
-    shell.outer_radius = outer_radius;
+    shell.inner_radius = wireway ? 0.0 : raceway.inner_diameter / 2;
+    shell.outer_radius = wireway ? raceway.wall : raceway.outer_diameter / 2;
+    if (wireway) shell.core.half_size = {raceway.width / 2, raceway.height / 2};
     shell.metal = metal(building_.catalogue, raceway.material);
     shells_.push_back(shell);
     shell_rows_.push_back({-1, run});
@@ -187,18 +210,6 @@ class Assembly {
     }
     shells_.push_back(shell);
     shell_rows_.push_back({item.armour, run});
-  }
-
-  // The jacket of a flat cable is taken as the circle around it, filled with the cable's filler.
-  void add_jacket(const CableType& cable, const Eigen::Vector2d& centre, double reach) {
-    engine::Body body;
-    body.centre = centre;
-    body.outer_radius = cable.width / 2;
-    body.inner_radius = std::max(body.outer_radius - cable.jacket_thickness, reach + k_joint_slack);
-    body.outer_radius = std::max(body.outer_radius, body.inner_radius + k_joint_slack);
-    body.filler = dielectric(building_.catalogue, cable.filler.empty() ? cable.jacket : cable.filler);
-    body.wall = dielectric(building_.catalogue, cable.jacket);
-    section_.bodies.push_back(body);
   }
 
   const Building& building_;
@@ -247,6 +258,7 @@ struct SectionLibrary::Impl {
                                 nullptr,
                                 wire.id,
                                 wire_signature(*wire.type),
+                                packing_radius(*wire.type),
                                 packing_radius(*wire.type)});
           continue;
         }
@@ -254,8 +266,13 @@ struct SectionLibrary::Impl {
         const auto [slot, fresh] = cable_item.try_emplace({run, wire.circuit}, items[run].size());
         if (fresh) {
           const CableType& cable = building.catalogue.cables.at(circuit.cable->text);
-          items[run].push_back(
-              {{}, -1, &cable, circuit.name.text, "cable " + cable.name, packing_radius(cable)});
+          items[run].push_back({{},
+                                -1,
+                                &cable,
+                                circuit.name.text,
+                                "cable " + cable.name,
+                                packing_radius(cable),
+                                packing_radius(cable) - (cable.width - cable.height) / 2});
         }
         Item& item = items[run][slot->second];
         if (wire.armour) {
@@ -274,16 +291,11 @@ struct SectionLibrary::Impl {
 
   double half_width(int run) const {
     const RacewayType* raceway = raceways[run];
-    if (raceway && raceway->kind == RacewayKind::wireway) return wireway_radius(*raceway) + raceway->wall;
+    if (raceway && raceway->kind == RacewayKind::wireway) return raceway->width / 2 + raceway->wall;
     if (raceway && raceway->kind != RacewayKind::tray) return raceway->outer_diameter / 2;
     double width = 0.0;
     for (const Item& item : items[run]) width += 2 * item.radius + k_row_gap;
     return std::min(width, bundle_width(run)) / 2;
-  }
-
-  // A rectangular wireway is taken as the round tube of its area.
-  static double wireway_radius(const RacewayType& raceway) {
-    return std::sqrt(raceway.width * raceway.height / std::numbers::pi);
   }
 
   // Open cables are strapped up about as wide as high.
@@ -310,36 +322,45 @@ struct SectionLibrary::Impl {
 
   void add_run(Assembly& assembly, int run, double x, std::mt19937_64& random) const {
     const RacewayType* raceway = raceways[run];
-    const Run& model = building.runs[run];
-    std::vector<double> radii;
-    for (const Item& item : items[run]) radii.push_back(item.radius);
     const bool tube = raceway && raceway->kind != RacewayKind::tray;
-    std::vector<Eigen::Vector2d> centres;
+    const bool given = !building.runs[run].layout.empty();
     Eigen::Vector2d origin{x, 0.0};
     if (tube) {
-      const bool wireway = raceway->kind == RacewayKind::wireway;
-      const double inner = wireway ? wireway_radius(*raceway) : raceway->inner_diameter / 2;
-      const double outer = wireway ? inner + raceway->wall : raceway->outer_diameter / 2;
-      origin.y() = clearance_of(model) + outer;
-      centres = model.layout.empty() ? engine::resting_layout(radii, inner, random) : given_layout(run);
-      if (raceway->metal()) {
-        assembly.add_metal_tube(*raceway, inner, outer, origin, run);
-      } else {
+      origin.y() = clearance_of(building.runs[run]) + outer_half_height(*raceway);
+      if (raceway->metal())
+        assembly.add_metal_tube(*raceway, origin, run);
+      else
         assembly.add_plastic_tube(*raceway, origin);
-      }
-    } else {
-      origin.y() = raceway ? k_row_gap : clearance_of(model);
-      centres = !model.layout.empty()
-                    ? given_layout(run)
-                    : stacked_rows(radii, raceway ? raceway->width : bundle_width(run), random);
-      if (!model.layout.empty() && !raceway) origin.y() = 0.0;
+    } else if (!given || raceway) {
+      origin.y() = raceway ? k_row_gap : clearance_of(building.runs[run]);
     }
+    const std::vector<Eigen::Vector2d> centres = given ? given_layout(run) : drawn_layout(run, random);
     boost::random::uniform_real_distribution<double> turn(0.0, 2 * std::numbers::pi);
     for (std::size_t i = 0; i < items[run].size(); ++i) {
       // A cable pulled into a tube turns as it likes; in the open a flat one lies flat.
       const double angle = items[run][i].cable && tube ? turn(random) : 0.0;
       assembly.add_item(items[run][i], origin + centres[i], angle, run);
     }
+  }
+
+  static double outer_half_height(const RacewayType& raceway) {
+    return raceway.kind == RacewayKind::wireway ? raceway.height / 2 + raceway.wall
+                                                : raceway.outer_diameter / 2;
+  }
+
+  // Counted from the middle of a tube or a wireway, else from the lowest point of what lies there.
+  std::vector<Eigen::Vector2d> drawn_layout(int run, std::mt19937_64& random) const {
+    const RacewayType* raceway = raceways[run];
+    std::vector<double> radii, half_heights;
+    for (const Item& item : items[run]) {
+      radii.push_back(item.radius);
+      half_heights.push_back(item.half_height);
+    }
+    if (!raceway || raceway->kind == RacewayKind::tray)
+      return stacked_rows(radii, half_heights, raceway ? raceway->width : bundle_width(run), random);
+    if (raceway->kind == RacewayKind::wireway)
+      return engine::resting_layout(radii, Eigen::Vector2d(raceway->width / 2, raceway->height / 2), random);
+    return engine::resting_layout(radii, raceway->inner_diameter / 2, random);
   }
 
   engine::CrossSection draw(const Stretch& stretch, int number, std::vector<StretchRow>& rows) const {
@@ -494,19 +515,22 @@ std::vector<std::string> SectionLibrary::assumptions() const {
                       impl_->wander_length(), k_most_layouts));
     }
     if (raceway && raceway->kind == RacewayKind::wireway) {
-      texts.insert(fmt::format("'{}' is taken as a round metal tube of the same area", raceway->name));
+      texts.insert(fmt::format(
+          "'{}' carries current like a round tube of its metal and of its mean distance from the middle",
+          raceway->name));
     }
     if (raceway && raceway->kind == RacewayKind::tray) {
       texts.insert(fmt::format("'{}' is taken as a metal plane under its cables", raceway->name));
     }
     for (const Item& item : impl_->items[r]) {
       if (!item.cable || item.cable->armour) continue;
+      const bool turned = item.cable->flat() && raceway && raceway->kind != RacewayKind::tray;
       texts.insert(fmt::format(
-          "cable '{}': {} with an effective permittivity of {:.2g} between its cores", item.cable->name,
-          item.cable->flat() ? "its flat jacket is taken as the circle around it, filled" : "filled",
+          "cable '{}': the space between its cores has a permittivity of {:.2g}{}", item.cable->name,
           dielectric(impl_->building.catalogue,
                      item.cable->filler.empty() ? item.cable->jacket : item.cable->filler)
-              .permittivity));
+              .permittivity,
+          turned ? "; in a raceway it keeps the room of the circle around it" : ""));
     }
   }
   return {texts.begin(), texts.end()};
