@@ -44,7 +44,11 @@ std::string effect_in_words(const Effect& effect) {
                                        value, threshold, printable(effect.subject))
                          : fmt::format("{}, {}: {}: {}, from {} on it may", printable(effect.where),
                                        printable(effect.subject), in_words(effect), value, threshold);
-  if (effect.run_length) text += fmt::format("; reached at a run of {:.3g} m", *effect.run_length);
+  // What a load conducts needs no length to speak of.
+  if (effect.run_length && *effect.run_length < 0.1)
+    text += "; at any length";
+  else if (effect.run_length)
+    text += fmt::format("; reached at a run of {:.3g} m", *effect.run_length);
   return text;
 }
 

@@ -104,11 +104,12 @@ std::string report_page(const PageModel& model) {
   PageIndex index(model);
   SectionGallery gallery(model.building, model.findings.seed);
   const std::string effects = page_effects(model.findings);
+  const std::string hurting = page_hurting(model.findings);
   const std::string fed = page_fed(model, k_fed_room);
   const std::string ends = page_appendix(model);
   const std::string head = top(model) + header(model, !effects.empty(), !fed.empty());
   const auto before = [&] {
-    return page_list(model, index, k_list_room) + page_plan(model, index) + effects;
+    return hurting + page_list(model, index, k_list_room) + page_plan(model, index) + effects;
   };
   const auto after = [&] { return page_tests(model, index, k_tests_room) + fed + ends; };
   // Whatever links to sheets is written anew once they are known; links to all of them are allowed for.

@@ -128,30 +128,44 @@ std::string recompute(const Findings& findings, const Building& building) {
       html(building.file), html(findings.stage), findings.seed, findings.residual);
 }
 
+/// Effects that hurt people, or all others that happen or come near it.
+std::vector<std::string> effect_lines(const Findings& findings, bool hurting) {
+  constexpr std::size_t k_most = 60;
+  std::vector<std::string> lines;
+  for (const auto& effect : findings.effects) {
+    const bool hurts = effect.what == "person_feels" && effect.happens;
+    const bool near = effect.happens || effect.value >= 0.2 * effect.threshold;
+    if (hurts == hurting && near && lines.size() < k_most)
+      lines.push_back(effect_in_words(effect) + ". Threshold: " + effect.source + ".");
+  }
+  return lines;
+}
+
 std::string listed(const char* title, const std::vector<std::string>& lines) {
   return lines.empty() ? "" : std::string("<h3>") + title + "</h3>\n" + html_list(lines);
 }
 
 }  // namespace
 
+std::string page_hurting(const Findings& findings) {
+  const std::vector<std::string> lines = effect_lines(findings, true);
+  if (lines.empty()) return "";
+  return "<section id=hurts aria-labelledby=hurts-h><h2 id=hurts-h>Current that can hurt</h2>\n" +
+         html_list(lines) + "</section>\n";
+}
+
 std::string page_effects(const Findings& findings) {
-  std::vector<std::string> hurting, others;
-  for (const auto& effect : findings.effects) {
-    const bool hurts = effect.what == "person_feels" && effect.happens;
-    if (!hurts && !effect.happens && effect.value < 0.2 * effect.threshold) continue;
-    std::vector<std::string>& list = hurts ? hurting : others;
-    if (list.size() < 60) list.push_back(effect_in_words(effect) + ". Threshold: " + effect.source + ".");
-  }
+  const std::vector<std::string> others = effect_lines(findings, false);
   std::vector<std::string> patterns;
   for (const auto& pattern : findings.patterns)
     patterns.push_back(fmt::format("{} at {}, {}: lit {}: {}. L-N {}, L-G {}, N-G {}.", pattern.instrument,
                                    pattern.place, pattern.circuit, pattern.lit, pattern.meaning,
                                    volts_text(pattern.hot_neutral), volts_text(pattern.hot_ground),
                                    volts_text(pattern.neutral_ground)));
-  if (hurting.empty() && others.empty() && patterns.empty()) return "";
+  if (others.empty() && patterns.empty()) return "";
   return "<section id=currents aria-labelledby=currents-h><h2 id=currents-h>What coupled current "
          "does</h2>\n" +
-         listed("Current that can hurt", hurting) + listed("Loads, devices and touch", others) +
+         listed("Loads, devices and touch", others) +
          listed("Lamps of receptacle testers; no pattern proves anything dead", patterns) + "</section>\n";
 }
 

@@ -8,6 +8,7 @@
 #include "io/page_html.h"
 #include "io/page_parts.h"
 #include "io/text_layout.h"
+#include "netlists/touch.h"
 
 namespace io {
 namespace {
@@ -157,12 +158,16 @@ std::string verdict_sentence(const Findings& findings) {
                   "conductors that nothing feeds as drawn can read as if they were live (false_live). ");
   if (dead + live == 0)
     out += "No listed instrument contradicts the drawing on any conductor; that proves nothing. ";
-  const auto felt = std::count_if(findings.effects.begin(), findings.effects.end(), [](const auto& effect) {
-    return effect.what == "person_feels" && effect.happens;
-  });
+  double most = 0.0;  // A
+  int felt = 0;       // places
+  for (const auto& effect : findings.effects) {
+    if (effect.what != "person_feels" || !effect.happens) continue;
+    most = std::max(most, effect.value);
+    ++felt;
+  }
   if (felt > 0)
-    out += fmt::format("At {} a coupled or stray current can be felt, or worse. ",
-                       plural(felt, "place", "places"));
+    out += fmt::format("At {} a current of up to {} can go through a person: {}. ",
+                       plural(felt, "place", "places"), amperes_text(most), netlists::body_zone(most));
   return out;
 }
 

@@ -82,7 +82,10 @@ std::string page_sheet(const PageModel& model, const PageIndex& index, SectionGa
 /// The test sheets, at most `room` bytes of them, places with flagged conductors first.
 std::string page_tests(const PageModel& model, const PageIndex& index, std::size_t room);
 
-/// Currents that can hurt, effects on loads and devices, patterns of receptacle testers.
+/// Currents that people feel, or worse; "" where there are none.
+std::string page_hurting(const netlists::Findings& findings);
+
+/// Effects on loads and devices, patterns of receptacle testers.
 std::string page_effects(const netlists::Findings& findings);
 
 /// The drawing of panels, places and runs.
