@@ -1,6 +1,7 @@
 #include "engine/impedance.h"
 
 #include <cmath>
+#include <map>
 #include <numbers>
 #include <stdexcept>
 #include <string>
@@ -9,6 +10,7 @@
 #include "engine/constants.h"
 #include "engine/earth_return.h"
 #include "engine/equivalent_tube.h"
+#include "engine/proximity.h"
 #include "engine/section_tree.h"
 
 namespace engine {
@@ -127,6 +129,25 @@ MatrixXcd loop_impedance(const CrossSection& section, const ImpedanceConditions&
   return loop;
 }
 
+/// Adds what eddy currents do among the conductors of one enclosure. The currents within shells act there as
+/// lines, their own walls not.
+void add_proximity(MatrixXcd& loop, const CrossSection& section, const ImpedanceConditions& conditions,
+                   const std::vector<int>& parent) {
+  const int wires = static_cast<int>(section.conductors.size());
+  std::map<int, std::vector<int>> members;
+  for (int k = 0; k < section.conductor_count(); ++k) members[parent[k]].push_back(k);
+  for (const auto& [enclosure, rows] : members) {
+    std::vector<EddyWire> eddies;
+    for (const int k : rows) {
+      const bool wire = k < wires;
+      eddies.push_back({centre(section, k), wire ? section.conductors[k].radius : 0.0,
+                        wire ? dc_resistance(section.conductors[k], conditions.temperature) : 0.0,
+                        wire ? section.conductors[k].metal.relative_permeability : 1.0});
+    }
+    loop(rows, rows) += proximity_impedance(eddies, conditions.frequency);
+  }
+}
+
 /// Impedances between single conductors' currents instead of currents within outlines. On a shell's outer
 /// surface its inner current also acts, by the transfer impedance, and the other way round.
 MatrixXcd per_conductor(const MatrixXcd& loop, const std::vector<int>& parent,
@@ -171,6 +192,7 @@ Eigen::MatrixXcd series_impedance(const CrossSection& section, const ImpedanceCo
   for (const Shell& shell : section.shells) walls.push_back(wall_impedance(shell, conditions));
 
   MatrixXcd z = loop_impedance(section, conditions, parent, walls);
+  add_proximity(z, section, conditions, parent);
   if (!walls.empty()) z = per_conductor(z, parent, walls);
   return section.surroundings == Surroundings::open ? returned_in(z, section.reference) : z;
 }

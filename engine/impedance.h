@@ -28,7 +28,7 @@ double dc_resistance(const RoundConductor& conductor, double temperature);
 
 /// Internal impedance with skin effect, ohm/m: the round solid wire's Bessel function form scaled to
 /// the conductor's dc resistance, internal inductance scaled to the strands' geometric mean radius.
-/// Proximity effect, some 2 % of the resistance of 4/0 AWG in a conduit at 60 Hz and less below, is left out.
+/// Of the conductor alone: what neighbours add is in proximity.h.
 std::complex<double> internal_impedance(const RoundConductor& conductor, double frequency,
                                         double temperature);
 
@@ -49,8 +49,8 @@ TubeImpedance tube_impedance(double inner_radius, double outer_radius, const Met
 /// in the open, the reference conductor. Inside a shell the shell is a conductor like the others; shells
 /// may hold shells.
 ///
-/// Currents are taken to be spread evenly around every conductor, shell and tube: metal is no magnetic
-/// wall, and images, eddy currents and proximity effect in a neighbour are left out.
+/// Eddy currents among the round conductors of an enclosure are in it (proximity effect). Shells and tubes
+/// carry currents spread evenly around them: metal walls are no magnetic walls, without images.
 /// Throws std::invalid_argument as require_valid does, and where a condition is not physical.
 /// Method and source: engine/README.md, "Series impedance".
 Eigen::MatrixXcd series_impedance(const CrossSection& section, const ImpedanceConditions& conditions);
