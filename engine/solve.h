@@ -57,6 +57,7 @@ class SolvedNetwork {
   struct Impl;
   std::unique_ptr<Impl> impl_;
   friend class Attribution;
+  friend class Sensitivity;
 };
 
 }  // namespace engine
