@@ -14,6 +14,8 @@
 namespace io {
 namespace {
 
+constexpr int k_most_draws = 100000;
+
 struct Command {
   CLI::App* app = nullptr;
   std::function<int(const CommandOptions&)> run;
@@ -26,6 +28,24 @@ void add_quiet(CLI::App* app, CommandOptions& options) {
 void add_stage_and_seed(CLI::App* app, CommandOptions& options) {
   app->add_option("--stage", options.stage, "Stage of the works; the first if not given")->type_name("NAME");
   app->add_option("--seed", options.seed, "Of the layouts drawn; 1 if not given")->type_name("N");
+}
+
+/// A number of draws, or auto. Returns what is wrong, "" if nothing.
+std::string draws_fault(const std::string& text) {
+  const bool digits = !text.empty() && text.find_first_not_of("0123456789") == std::string::npos;
+  if (text == "auto" || (digits && text.size() <= 6 && std::stoi(text) <= k_most_draws)) return "";
+  return fmt::format("'{}' is not a number of draws; write a number up to {}, or auto", text, k_most_draws);
+}
+
+void add_draws(CLI::App* app, CommandOptions& options) {
+  app->add_option(
+         "--draws", options.draws,
+         "Samples of all that is uncertain; auto: until the first twenty ranks stand; 200 if not given")
+      ->check(draws_fault)
+      ->type_name("N|auto");
+  app->add_option("--threads", options.threads, "At work at once; as many as the machine has if not given")
+      ->check(CLI::Range(1, 256))
+      ->type_name("N");
 }
 
 void add_model(CLI::App* app, CommandOptions& options) {
@@ -86,6 +106,7 @@ std::vector<Command> add_commands(CLI::App& app, CommandOptions& options) {
   catalogue->add_option("NAME", options.entry, "An entry to show in full")->type_name("");
 
   for (CLI::App* one : {predict, explain, network}) add_stage_and_seed(one, options);
+  for (CLI::App* one : {predict, explain}) add_draws(one, options);
   for (CLI::App* one : {check, predict, explain, section, network}) add_quiet(one, options);
   return {{check, check_command},     {predict, predict_command}, {explain, explain_command},
           {section, section_command}, {network, network_command}, {catalogue, catalogue_command}};

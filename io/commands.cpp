@@ -17,17 +17,13 @@
 #include "io/terminal.h"
 #include "io/text_layout.h"
 #include "io/writers.h"
-#include "netlists/judge.h"
 #include "netlists/lower.h"
-#include "netlists/meter.h"
-#include "netlists/stage.h"
+#include "netlists/predict.h"
 
 namespace io {
 namespace {
 using netlists::Building;
 using netlists::Findings;
-
-constexpr double k_residual = 1e-6;  // of a node's currents; a solved network stays far below
 
 void say(const std::string& text) {
   if (!text.empty()) fmt::print(stderr, "{}", text);
@@ -80,9 +76,7 @@ netlists::Lowered lowered(const Building& building, const CommandOptions& option
 
 engine::SolvedNetwork solved(const netlists::Lowered& lowered) {
   engine::SolvedNetwork network(lowered.network);
-  if (!(network.residual() <= k_residual))
-    throw std::runtime_error(fmt::format(
-        "the network could not be solved: currents balance within {:.1e} only", network.residual()));
+  netlists::require_solved(network.residual());
   return network;
 }
 
@@ -91,25 +85,28 @@ Progress progress_of(const CommandOptions& options) {
   return Progress(messages_on_terminal() && !options.quiet, message_width());
 }
 
-/// The findings with what they were found from.
-struct Predicted {
-  Building building;  // in the stage
-  netlists::Lowered network;
-  Findings findings;
-};
-
-Predicted predicted(const CommandOptions& options) {
-  Predicted out;
-  const Building building = read_building(options);
-  const Progress progress = progress_of(options);
-  out.network = lowered(building, options);
-  out.building = netlists::in_stage(building, options.stage);
-  netlists::meter().begin("network and readings", 0);
-  out.findings = netlists::judge(building, out.network, solved(out.network));
-  out.findings.program_version = IDLEWIRE_VERSION;
-  out.findings.stage = netlists::stage_name(building, options.stage);
-  out.findings.seed = options.seed;
+netlists::PredictOptions predict_options(const CommandOptions& options) {
+  netlists::PredictOptions out;
+  out.stage = options.stage;
+  out.seed = options.seed;
+  out.until_stable = options.draws == "auto";
+  out.draws = out.until_stable ? 0 : std::stoi(options.draws);
+  out.threads = options.threads;
+  out.explain = options.conductor;
   return out;
+}
+
+netlists::Predicted predicted(const CommandOptions& options) {
+  const Building building = read_building(options);
+  require_stage(building, options.stage);
+  const Progress progress = progress_of(options);
+  try {
+    netlists::Predicted out = netlists::predict(building, predict_options(options));
+    out.findings.program_version = IDLEWIRE_VERSION;
+    return out;
+  } catch (const std::invalid_argument& error) {
+    throw InputError(fmt::format("{}: error: {}", building.file, error.what()));
+  }
 }
 
 void say_warnings(const std::vector<std::string>& warnings, const CommandOptions& options) {
@@ -189,7 +186,7 @@ int check_command(const CommandOptions& options) {
 
 int predict_command(const CommandOptions& options) {
   require_writable(options);
-  const Predicted all = predicted(options);
+  const netlists::Predicted all = predicted(options);
   const Findings& findings = all.findings;
   const PageModel page{findings, all.building, all.network, today()};
   if (!options.html.empty()) write_whole(options.html, report_page(page));

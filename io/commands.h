@@ -24,6 +24,8 @@ struct CommandOptions {
   std::string svg;        // likewise
   std::string gate;       // "", "false_dead" or "misleading"
   unsigned seed = 1;
+  std::string draws = "200";  // or "auto"
+  int threads = 0;            // 0: as many as the machine has
   bool quiet = false;
 };
 

@@ -19,6 +19,7 @@ using netlists::PlaceFindings;
 using netlists::Reading;
 
 constexpr int k_effects_shown = 20;
+constexpr std::size_t k_influences_shown = 10;
 constexpr int k_digits = 4;  // of the figures that have to add up
 
 const ConductorFindings& find(const Findings& findings, const std::string& id) {
@@ -50,7 +51,23 @@ std::string verdict(const ConductorFindings& conductor, int width) {
       "Misleads   ",
       misleads_in_words(conductor) + (conductor.rank ? fmt::format(" (rank {})", *conductor.rank) : ""),
       width);
+  if (conductor.probability) out += paragraph("           ", chance_in_words(conductor) + ".", width);
   return out;
+}
+
+/// The uncertain quantities that move its reading most.
+std::string influences(const ConductorFindings& conductor, int width) {
+  if (conductor.influences.empty()) return "";
+  TextTable table({{"what is uncertain", std::max(24, width - 46)},
+                   {"one standard deviation moves it by", 20, true},
+                   {"share of variance", 10, true}});
+  std::size_t shown = 0;
+  for (const auto& one : conductor.influences)
+    if (shown++ < k_influences_shown)
+      table.add({printable(one.quantity),
+                 (one.derivative < 0 ? "-" : "") + small_volts(std::abs(one.derivative)),
+                 fmt::format("{:.1f} %", 100 * one.share)});
+  return "\nWhat its reading hangs on\n" + table.indented(2);
 }
 
 std::string felt(const ConductorFindings& conductor, int width) {
@@ -68,6 +85,7 @@ std::string settles(const ConductorFindings& conductor, int width) {
 std::string thevenin(const PlaceFindings& place, int width) {
   TextTable table({{"what shows at " + printable(place.place) + ", to " + place.reference}, {""}});
   table.add({"open circuit", phasor_text(place.open_circuit, k_digits)});
+  if (place.open_circuit_band) table.add({"in nine of ten draws", band_text(place.open_circuit_band)});
   table.add({"source impedance",
              ohms_text(std::abs(place.source_impedance), 3) + " at " + degrees_text(place.source_impedance)});
   table.add({"short-circuit current (computed)", amperes_text(place.short_circuit, 3)});
@@ -154,6 +172,21 @@ std::string readings(const PlaceFindings& place, int width) {
   return "\n  Readings, the loading of the instrument included\n" + table.indented(2) + remarks(place, width);
 }
 
+/// The same over the draws, where there are any.
+std::string drawn_readings(const PlaceFindings& place, int width) {
+  TextTable table({{"instrument", 24},
+                   {"to", std::max(12, width - 66)},
+                   {"p05", 9, true},
+                   {"median", 9, true},
+                   {"p95", 9, true}});
+  for (const Reading& reading : place.readings)
+    if (reading.band && !reading.indicator)
+      table.add({printable(reading.instrument), printable(reading.reference), small_volts(reading.band->p05),
+                 small_volts(reading.band->p50), small_volts(reading.band->p95)});
+  if (table.row_count() == 0) return "";
+  return "\n  The same over the draws\n" + table.indented(2);
+}
+
 std::string indicators(const PlaceFindings& place, int width) {
   TextTable table({{"indicator", 24}, {"to", std::max(12, width - 58)}, {"sees", 9, true}, {"", 20}});
   for (const Reading& reading : place.readings)
@@ -192,10 +225,11 @@ std::string explanation(const Findings& findings, const std::string& id, int wid
   width = std::max(80, width);
   std::string out = paragraph("", printable(conductor.id), width) + sheet_head(findings, date, width) + "\n";
   out += verdict(conductor, width);
-  out += settles(conductor, width);
+  out += settles(conductor, width) + influences(conductor, width);
   for (const PlaceFindings& place : conductor.places)
     out += "\n" + thevenin(place, width) + contributions(place, width) + readings(place, width) +
-           indicators(place, width) + effects_text(findings, width, place.place, k_effects_shown) +
+           drawn_readings(place, width) + indicators(place, width) +
+           effects_text(findings, width, place.place, k_effects_shown) +
            curve(findings, conductor, place, width);
   if (conductor.places.empty()) out += "\nIt can be reached at no place of the model.\n";
   return out + sheet_foot(findings, width);

@@ -9,8 +9,20 @@ using netlists::PlaceFindings;
 using netlists::Reading;
 using nlohmann::ordered_json;
 
-void add_empty_percentiles(ordered_json& out) {
+/// Percentiles over the draws, null without; then their standard errors in the same order.
+void add_percentiles(ordered_json& out, const std::optional<netlists::Band>& band, const std::string& where,
+                     Numbers& number) {
   for (const char* key : {"p05", "p50", "p95"}) out[key] = nullptr;
+  if (!band) return;
+  out["p05"] = number.real(band->p05, where);
+  out["p50"] = number.real(band->p50, where);
+  out["p95"] = number.real(band->p95, where);
+  out["standard_errors"] = {number.real(band->p05_error, where), number.real(band->p50_error, where),
+                            number.real(band->p95_error, where)};
+}
+
+ordered_json optional_json(const std::optional<double>& value, const std::string& where, Numbers& number) {
+  return value ? number.real(*value, where) : ordered_json(nullptr);
 }
 
 ordered_json reading_json(const Reading& reading, const std::string& where, Numbers& number) {
@@ -20,7 +32,7 @@ ordered_json reading_json(const Reading& reading, const std::string& where, Numb
   out["range_V"] = reading.range ? ordered_json(*reading.range) : ordered_json(nullptr);
   out["volts"] =
       number.real(reading.volts, where + ": reading of " + reading.instrument + " to " + reading.reference);
-  add_empty_percentiles(out);
+  add_percentiles(out, reading.band, where + ": percentiles of " + reading.instrument, number);
   out["appearance"] = netlists::to_string(reading.appearance);
   out["judged"] = reading.judged;
   if (!reading.on_ranges.empty()) {
@@ -34,16 +46,33 @@ ordered_json reading_json(const Reading& reading, const std::string& where, Numb
   return out;
 }
 
+ordered_json envelope_json(const netlists::Envelope& envelope, const std::string& where, Numbers& number) {
+  return {{"least", number.real(envelope.least, where + ": envelope")},
+          {"most_found", number.real(envelope.most_found, where + ": envelope")},
+          {"most_bound", number.real(envelope.most_bound, where + ": envelope")},
+          {"exact", envelope.exact},
+          {"state", envelope.state}};
+}
+
 ordered_json place_json(const PlaceFindings& place, const std::string& id, Numbers& number) {
   const std::string where = id + " at " + place.place;
   ordered_json out;
   out["place"] = place.place;
   ordered_json open{{"reference", place.reference}};
   open.update(number.phasor(place.open_circuit, "volts", where + ": open-circuit voltage"));
-  add_empty_percentiles(open);
+  add_percentiles(open, place.open_circuit_band, where + ": percentiles of the open circuit", number);
   out["open_circuit"] = open;
   out["source_impedance"] = number.phasor(place.source_impedance, "ohms", where + ": source impedance");
+  if (place.source_impedance_band)
+    add_percentiles(out["source_impedance"], place.source_impedance_band, where + ": source impedance",
+                    number);
   out["short_circuit_A"] = number.real(place.short_circuit, where + ": short-circuit current");
+  if (place.short_circuit_band) {
+    ordered_json band;
+    add_percentiles(band, place.short_circuit_band, where + ": short-circuit current", number);
+    out["short_circuit_band_A"] = band;
+  }
+  if (place.envelope) out["envelope_V"] = envelope_json(*place.envelope, where, number);
   out["readings"] = ordered_json::array();
   for (const Reading& reading : place.readings)
     out["readings"].push_back(reading_json(reading, where, number));
@@ -64,6 +93,9 @@ ordered_json settle_json(const netlists::Settle& settle, const std::string& id, 
   out["treat_as_live_above_V"] =
       settles ? number.real(settle.treat_as_live_above, id + ": limit from which to treat as live")
               : ordered_json(nullptr);
+  if (settle.band) add_percentiles(out, settle.band, id + ": expected reading", number);
+  out["coupling_taken_for_live"] = optional_json(settle.coupling_taken_for_live, id, number);
+  out["source_taken_for_coupling"] = optional_json(settle.source_taken_for_coupling, id, number);
   out["why"] = settle.why;
   return out;
 }
@@ -77,9 +109,18 @@ ordered_json conductor_json(const ConductorFindings& conductor, Numbers& number)
   out["isolated_supply"] = conductor.isolated_supply;
   out["leakage"] = conductor.leakage;
   out["not_predicted"] = conductor.not_predicted;
-  out["misleads"] = {{"how", netlists::to_string(conductor.misleads)}, {"probability", nullptr}};
+  out["misleads"] = {{"how", netlists::to_string(conductor.misleads)},
+                     {"probability", optional_json(conductor.probability, conductor.id, number)}};
+  if (conductor.probability)
+    out["misleads"]["standard_error"] = number.real(conductor.probability_error, conductor.id);
   out["expected_reading_V"] = number.real(conductor.expected_reading, conductor.id + ": expected reading");
   out["settle"] = settle_json(conductor.settle, conductor.id, number);
+  out["moved_by"] = ordered_json::array();
+  for (const auto& influence : conductor.influences)
+    out["moved_by"].push_back(
+        {{"quantity", influence.quantity},
+         {"V_per_standard_deviation", number.real(influence.derivative, conductor.id + ": influence")},
+         {"share_of_variance", number.real(influence.share, conductor.id + ": influence")}});
   out["places"] = ordered_json::array();
   for (const PlaceFindings& place : conductor.places)
     out["places"].push_back(place_json(place, conductor.id, number));
@@ -141,7 +182,7 @@ std::string findings_json(const Findings& findings) {
   out["model"] = {{"title", findings.title}, {"sha256", findings.model_sha256}};
   out["frequency_Hz"] = findings.frequency;
   out["stage"] = findings.stage;
-  out["draws"] = 0;
+  out["draws"] = findings.draws;
   out["seed"] = findings.seed;
   out["residual"] = number.real(findings.residual, "the residual of the network solution");
   out["instruments"] = ordered_json::array();

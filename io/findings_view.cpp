@@ -134,6 +134,17 @@ std::string misleads_in_words(const ConductorFindings& conductor) {
 
 std::string small_volts(double volts) { return volts < 0.01 ? "<0.01 V" : volts_text(volts); }
 
+std::string band_text(const std::optional<netlists::Band>& band) {
+  if (!band) return "-";
+  return small_volts(band->p05) + " to " + small_volts(band->p95);
+}
+
+std::string chance_in_words(const ConductorFindings& conductor) {
+  if (!conductor.probability) return "";
+  return fmt::format("probability {:.2f}, give or take {:.2f}, if the drawing is right",
+                     *conductor.probability, conductor.probability_error);
+}
+
 std::string reading_text(const Focus& at, const std::string& instrument) {
   double least = 0.0, most = 0.0;
   bool any = false;

@@ -1,6 +1,7 @@
 // What the writers for people pick from the findings: the place of a row, its readings, its words.
 #pragma once
 
+#include <optional>
 #include <string>
 #include <vector>
 
@@ -40,6 +41,12 @@ std::string condition_in_words(const netlists::ConductorFindings& conductor);
 
 /// "false_live" in words; "not flagged" where nothing misleads.
 std::string misleads_in_words(const netlists::ConductorFindings& conductor);
+
+/// "28 to 57 V", the 5th to the 95th percentile; "-" without draws.
+std::string band_text(const std::optional<netlists::Band>& band);
+
+/// "probability 0.27, give or take 0.03, if the drawing is right"; "" without draws.
+std::string chance_in_words(const netlists::ConductorFindings& conductor);
 
 /// What `instrument` reads at the row's place against its reference: "61 V", "12 to 33 V" where more
 /// than one range was used, "-" where nothing.

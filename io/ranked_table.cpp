@@ -102,6 +102,17 @@ std::string indicators_text(const Focus& at) {
   return out;
 }
 
+/// Where nine of ten draws put the highest judged reading of the row.
+std::string drawn_text(const Focus& at) {
+  const netlists::Reading* most = nullptr;
+  if (at.place != nullptr)
+    for (const netlists::Reading& reading : at.place->readings)
+      if (reading.judged && reading.reference == at.reference && (!most || reading.volts > most->volts))
+        most = &reading;
+  if (most == nullptr || !most->band) return "";
+  return fmt::format(" In nine of ten draws {} on {}.", band_text(most->band), printable(most->instrument));
+}
+
 /// The lines below a row: how it misleads, its condition, who puts the voltage there, what settles it.
 std::string details(const ConductorFindings& conductor, const std::vector<std::string>& instruments,
                     bool readings_below, int width) {
@@ -109,6 +120,9 @@ std::string details(const ConductorFindings& conductor, const std::vector<std::s
   std::string text = conductor.misleads == Misleads::no ? std::string("not flagged: ")
                                                         : netlists::to_string(conductor.misleads) + ": ";
   text += condition_text(conductor) + ".";
+  if (conductor.probability && conductor.misleads != Misleads::no)
+    text += fmt::format(" Probability {:.2f}.", *conductor.probability);
+  text += drawn_text(at);
   if (conductor.leakage)
     text += " Leakage: conductance carries over a tenth of it; treat as live until the leak is found.";
   if (conductor.not_predicted) text += " Not predicted: expect more than shown.";

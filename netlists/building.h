@@ -182,7 +182,7 @@ struct Limits {
 
 /// Two-sided spreads: p05 and p95, in SI, or relative for `spread`.
 struct Uncertainty {
-  double length_spread = 0.0;                                     // relative
+  double length_spread = 0.1;                                     // relative
   std::map<std::string, std::pair<double, double>> permittivity;  // by material
   std::optional<std::pair<double, double>> clearance;             // m
   std::pair<double, double> wander_length{0.5, 5.0};              // m

@@ -14,6 +14,16 @@ enum class Condition { grounded, energised, through_load, grounded_through_load,
 enum class Appearance { live_like, unclear, dead_like };
 enum class Misleads { no, false_dead, false_live };
 
+/// Percentiles of a quantity over the draws and their standard errors, all in the unit of the quantity.
+struct Band {
+  double p05 = 0.0;
+  double p50 = 0.0;
+  double p95 = 0.0;
+  double p05_error = 0.0;
+  double p50_error = 0.0;
+  double p95_error = 0.0;
+};
+
 /// What a needle instrument shows on one of its ranges.
 struct RangeReading {
   double full_scale = 0.0;  // V
@@ -25,6 +35,7 @@ struct Reading {
   std::string reference;                // "ground", "earth" or CIRCUIT.wire
   std::optional<double> range;          // V full scale, where the needle matters
   double volts = 0.0;                   // V RMS, the instrument's loading included
+  std::optional<Band> band;             // V, over the draws
   std::vector<RangeReading> on_ranges;  // ascending; empty for an instrument of one input
   std::optional<double> swapped;        // V with its leads swapped, between soft points where over 5 % apart
   std::optional<double> lead_in_air;    // V with its common lead touching nothing; readings to ground only
@@ -40,6 +51,15 @@ struct ContributionEntry {
   std::complex<double> volts;  // V RMS
 };
 
+/// The extremes of a voltage over the states of all circuits.
+struct Envelope {
+  double least = 0.0;              // V, over states with at least one aggressor on
+  double most_found = 0.0;         // V, of the state below
+  double most_bound = 0.0;         // V, proven: no state exceeds it
+  bool exact = false;              // the two agree within 1 %
+  std::vector<std::string> state;  // that gives most_found: "LP2-7 off and tied"
+};
+
 /// What a coupled voltage or current does to something or somebody.
 struct Effect {
   std::string what;   // "lamp_glows", "input_reads_on", "coil_stays_in", "device_trips", "person_feels", ...
@@ -53,22 +73,36 @@ struct Effect {
   std::optional<double> run_length;  // m, at which the margin is gone; null where length does not decide
 };
 
+/// An uncertain quantity and how much it moves the reading a conductor is ranked by.
+struct Influence {
+  std::string quantity;     // "clearance of C3", "permittivity of PVC"
+  double derivative = 0.0;  // V per standard deviation of the quantity, signed
+  double share = 0.0;       // of the variance, 0 to 1
+};
+
 struct PlaceFindings {
   std::string place;
-  std::string reference;                  // "ground" or "earth"
-  std::complex<double> open_circuit;      // V RMS, to the reference
-  std::complex<double> source_impedance;  // ohm, to the reference
-  double short_circuit = 0.0;             // A
+  std::string reference;                      // "ground" or "earth"
+  std::complex<double> open_circuit;          // V RMS, to the reference
+  std::complex<double> source_impedance;      // ohm, to the reference
+  double short_circuit = 0.0;                 // A
+  std::optional<Band> open_circuit_band;      // V, magnitudes over the draws
+  std::optional<Band> source_impedance_band;  // ohm, magnitudes
+  std::optional<Band> short_circuit_band;     // A
+  std::optional<Envelope> envelope;
   std::vector<Reading> readings;
   std::vector<ContributionEntry> contributions;  // empty for stiffly fed conductors
 };
 
 /// What tells coupling from a real source (design: U behind U / 0.5 mA).
 struct Settle {
-  std::optional<std::string> instrument;  // null: none separates them
-  double expect = 0.0;                    // V, where an instrument does
-  double treat_as_live_above = 0.0;       // V, never above T = U R / (R + U/0.5 mA)
-  std::string why;                        // words for people, with what would settle it otherwise
+  std::optional<std::string> instrument;    // null: none separates them
+  double expect = 0.0;                      // V, where an instrument does
+  double treat_as_live_above = 0.0;         // V, never above T = U R / (R + U/0.5 mA)
+  std::string why;                          // words for people, with what would settle it otherwise
+  std::optional<Band> band = std::nullopt;  // V, of that reading over the draws
+  std::optional<double> coupling_taken_for_live = std::nullopt;    // chance, over the draws
+  std::optional<double> source_taken_for_coupling = std::nullopt;  // chance, of the weakest that is felt
 };
 
 /// What the three lamps of a plug-in tester show at a receptacle.
@@ -88,12 +122,15 @@ struct ConductorFindings {
   std::optional<int> rank;
   Condition condition = Condition::floating;
   Misleads misleads = Misleads::no;
-  double expected_reading = 0.0;  // V, the one it is ranked by
-  bool not_predicted = false;     // shares a run with a drive's output
-  bool leakage = false;           // conductance carries over a tenth of what it reads somewhere
-  bool isolated_supply = false;   // belongs to a supply without a grounded pole
-  std::string supply;             // of an energised conductor
+  std::optional<double> probability;  // that it misleads in the way said, over the draws; null without
+  double probability_error = 0.0;     // standard error
+  double expected_reading = 0.0;      // V, the one it is ranked by
+  bool not_predicted = false;         // shares a run with a drive's output
+  bool leakage = false;               // conductance carries over a tenth of what it reads somewhere
+  bool isolated_supply = false;       // belongs to a supply without a grounded pole
+  std::string supply;                 // of an energised conductor
   Settle settle;
+  std::vector<Influence> influences;  // largest share first; empty without draws
   std::vector<PlaceFindings> places;
 };
 
@@ -104,6 +141,7 @@ struct Findings {
   double frequency = 60.0;  // Hz
   std::string stage;
   unsigned seed = 1;
+  int draws = 0;
   std::vector<Effect> effects;                // those that can hurt first
   std::vector<ReceptaclePattern> patterns;    // of receptacle testers in the model's list
   std::vector<ConductorFindings> conductors;  // ranked first, by rank; then the others in model order

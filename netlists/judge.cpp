@@ -4,31 +4,26 @@
 
 #include <algorithm>
 #include <cmath>
-#include <map>
 #include <set>
 
 #include "netlists/causes.h"
 #include "netlists/condition.h"
 #include "netlists/effects.h"
+#include "netlists/measure.h"
 #include "netlists/places.h"
-#include "netlists/plan.h"
 #include "netlists/probes.h"
 #include "netlists/ranking.h"
-#include "netlists/reading.h"
 #include "netlists/receptacle.h"
-#include "netlists/settle.h"
+#include "netlists/settling.h"
 
 namespace netlists {
 namespace {
 
 using engine::Complex;
 
-constexpr double k_soft = 10e3;    // ohm from earth, from here on a common lead's capacitance may matter
-constexpr double k_leakage = 0.1;  // of a reading: carried by conductance, it is leakage
+constexpr double k_leakage = 0.1;        // of a reading: carried by conductance, it is leakage
 constexpr double k_net_current = 10e-3;  // A, from here on a run's net current is worth a warning
 constexpr double k_net_share = 0.05;     // of the largest current in the run
-
-using Ports = std::map<std::pair<int, int>, Port>;
 
 std::vector<bool> determined_nodes(const engine::SolvedNetwork& solved) {
   std::vector<bool> determined(static_cast<std::size_t>(solved.network().node_count), true);
@@ -63,6 +58,7 @@ class Judge {
         conditions_(conditions(lowered)),
         places_(building, lowered, conditions_),
         probes_(lowered, conditions_, places_, determined_),
+        settling_(building, conditions_, places_),
         causes_(building, lowered, conditions_, solved) {}
 
   Findings judge() {
@@ -78,14 +74,12 @@ class Judge {
     take_readings(findings.conductors);
     for (std::size_t i = 0; i < findings.conductors.size(); ++i) {
       set_misleads(findings.conductors[i]);
-      findings.conductors[i].settle = settle(i, findings.conductors[i]);
+      findings.conductors[i].settle = settling_.settle(i, findings.conductors[i]);
     }
     findings.effects = effects(building_, lowered_, conditions_, solved_);
     findings.patterns = receptacle_patterns(building_, lowered_, solved_);
     findings.warnings = warnings(findings.conductors);
     rank(findings.conductors);
-    findings.assumptions.emplace_back(
-        "no draws are made: readings are those of the nominal case, ranked by that alone");
     return findings;
   }
 
@@ -144,121 +138,18 @@ class Judge {
   // ---- readings ----------------------------------------------------------------------------------
 
   void take_readings(std::vector<ConductorFindings>& all) {
-    const Ports ports = solve_ports();
+    std::vector<PlaceFindings> measured = measure(building_.instruments, probed_, solved_);
     std::size_t next = 0;
     for (ConductorFindings& found : all) {
       for (PlaceFindings& at : found.places) {
-        const std::vector<Probe>& probes = probed_[next++];
-        const Port& port = ports.at({probes.front().node, probes.front().reference_node});
-        at.open_circuit = port.volts;
-        at.source_impedance = port.impedance;
-        at.short_circuit = port.impedance == 0.0 ? 0.0 : std::abs(port.volts / port.impedance);
-        for (const Probe& probe : probes) add_readings(at, probe, ports);
+        PlaceFindings& here = measured[next++];
+        at.open_circuit = here.open_circuit;
+        at.source_impedance = here.source_impedance;
+        at.short_circuit = here.short_circuit;
+        at.readings = std::move(here.readings);
+        for (Reading& reading : at.readings) reading.appearance = places_.appearance(reading.volts, at.place);
       }
     }
-  }
-
-  // Every pair of points that is probed, solved together, and the points of those that are not to ground by
-  // themselves: an instrument's common lead has a capacitance to earth.
-  Ports solve_ports() const {
-    Ports ports;
-    std::vector<std::pair<int, int>> apart;
-    const auto want = [&](int a, int b) {
-      if (ports.try_emplace({a, b}).second && a != b) apart.emplace_back(a, b);
-    };
-    for (const std::vector<Probe>& probes : probed_) {
-      for (const Probe& probe : probes) {
-        want(probe.node, probe.reference_node);
-        if (probe.reference == probes.front().reference) continue;
-        want(probe.node, 0);
-        want(probe.reference_node, 0);
-      }
-    }
-    const std::vector<Complex> impedances = solved_.source_impedances(apart);
-    for (std::size_t i = 0; i < apart.size(); ++i)
-      ports[apart[i]] = {solved_.volts(apart[i].first, apart[i].second), impedances[i]};
-    return ports;
-  }
-
-  void add_readings(PlaceFindings& found, const Probe& probe, const Ports& ports) const {
-    const Port& port = ports.at({probe.node, probe.reference_node});
-    const bool to_ground = probe.reference == found.reference;
-    const std::optional<PointPair> soft = to_ground ? std::nullopt : soft_pair(probe, ports);
-    for (const InstrumentType& instrument : building_.instruments) {
-      if (instrument.to_ground_only && !to_ground) continue;
-      const bool three = soft && instrument.common_to_earth > 0.0;
-      Reading reading = three ? read_soft(instrument, *soft, building_.frequency)
-                              : read(instrument, port, building_.frequency);
-      if (to_ground && !reading.indicator && instrument.common_to_earth > 0.0)
-        reading.lead_in_air = read_lead_in_air(instrument, port, building_.frequency);
-      reading.reference = probe.reference;
-      reading.appearance = places_.appearance(reading.volts, found.place);
-      reading.judged = probe.judged && !reading.indicator;
-      found.readings.push_back(std::move(reading));
-    }
-  }
-
-  // Both points with their impedances from earth, where neither is held by anything firmer than coupling.
-  static std::optional<PointPair> soft_pair(const Probe& probe, const Ports& ports) {
-    const Port& a = ports.at({probe.node, 0});
-    const Port& b = ports.at({probe.reference_node, 0});
-    if (std::abs(a.impedance) < k_soft || std::abs(b.impedance) < k_soft) return std::nullopt;
-    const Complex between = ports.at({probe.node, probe.reference_node}).impedance;
-    return PointPair{a.volts, b.volts, a.impedance, b.impedance, (a.impedance + b.impedance - between) / 2.0};
-  }
-
-  // ---- what settles it ---------------------------------------------------------------------------
-
-  Settle settle(std::size_t index, const ConductorFindings& found) const {
-    switch (found.condition) {
-      case Condition::grounded:
-        return settle_grounded();
-      case Condition::through_load:
-        return settle_through_load(conditions_.through[index]);
-      case Condition::energised: {
-        if (!found.isolated_supply) return settle_energised(found.supply);
-        const Supply* supply = find_supply(building_, found.supply);
-        return settle_isolated(found.supply, supply ? most_to_ground(building_, *supply) : 0.0);
-      }
-      case Condition::grounded_through_load:
-      case Condition::floating:
-        break;
-    }
-    if (found.leakage)
-      return {
-          std::nullopt, 0.0, 0.0,
-          "leakage: conductance carries over a tenth of what it reads, so a real if weak source is in it; "
-          "an instrument that loads hides it and proves nothing; treat as live until the leak is found"};
-    return settle_coupling(worst_readings(found), weakest_source(found));
-  }
-
-  // What each voltmeter shows at most, over the places, and the resistance it then has.
-  std::vector<CouplingReading> worst_readings(const ConductorFindings& found) const {
-    std::vector<CouplingReading> worst;
-    for (const InstrumentType& instrument : building_.instruments) {
-      CouplingReading most;
-      for (const PlaceFindings& at : found.places) {
-        for (const Reading& reading : at.readings) {
-          if (reading.instrument != instrument.name || reading.reference != at.reference || reading.indicator)
-            continue;
-          if (!most.instrument.empty() && reading.volts <= most.volts) continue;
-          most = {instrument.name, resistance_in_force(instrument, reading), reading.volts};
-        }
-      }
-      if (!most.instrument.empty()) worst.push_back(most);
-    }
-    return worst;
-  }
-
-  RealSource weakest_source(const ConductorFindings& found) const {
-    RealSource source{0.0, 0.0, building_.limits.body_current};
-    for (const PlaceFindings& at : found.places) {
-      const double volts = places_.nominal(at.place).least_to_ground;
-      const double live_like = places_.live_like(at.place);
-      source.volts = source.volts == 0.0 ? volts : std::min(source.volts, volts);
-      source.live_like = source.live_like == 0.0 ? live_like : std::min(source.live_like, live_like);
-    }
-    return source;
   }
 
   // ---- warnings ----------------------------------------------------------------------------------
@@ -327,8 +218,9 @@ class Judge {
   Conditions conditions_;
   Places places_;
   Probes probes_;
+  Settling settling_;
   Causes causes_;
-  std::vector<std::vector<Probe>> probed_;  // of every place of every conductor, in order
+  std::vector<ProbedPlace> probed_;  // of every place of every conductor, in order
 };
 
 }  // namespace

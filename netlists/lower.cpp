@@ -5,8 +5,12 @@
 
 namespace netlists {
 
-Lowering::Lowering(const Building& building, unsigned seed)
-    : building_(building), wiring_(wiring(building)), sections_(building, wiring_, seed), seed_(seed) {}
+Lowering::Lowering(const Building& building, const LowerOptions& options)
+    : building_(building),
+      wiring_(wiring(building)),
+      sections_(building, wiring_, options.seed, options.sections),
+      seed_(options.seed),
+      assume_loads_(options.unlisted_loads) {}
 
 Lowered Lowering::lower() {
   join_supplies();
@@ -28,7 +32,11 @@ Lowered Lowering::lower() {
 
 Lowered lower(const Building& building, const std::string& stage, unsigned seed) {
   const Building staged = in_stage(building, stage);
-  return Lowering(staged, seed).lower();
+  return lower_staged(staged, {seed, nullptr, false});
+}
+
+Lowered lower_staged(const Building& staged, const LowerOptions& options) {
+  return Lowering(staged, options).lower();
 }
 
 }  // namespace netlists

@@ -2,6 +2,7 @@
 #pragma once
 
 #include <map>
+#include <memory>
 #include <set>
 #include <string>
 #include <vector>
@@ -28,6 +29,13 @@ struct RunSection {
 
 /// The first layout of a run that `seed` draws. `run` must exist.
 RunSection run_section(const Building& building, const std::string& run, unsigned seed);
+
+/// One stretch of one or more runs that share a section: a run, or the joint part of runs that lie
+/// alongside each other.
+struct Stretch {
+  std::vector<int> runs;        // indices into Building::runs, in the order of their names
+  std::vector<double> spacing;  // m, between neighbours, surface to surface; size runs - 1
+};
 
 /// Where a conductor can be reached.
 struct Access {
@@ -73,6 +81,14 @@ struct LoweredLoad {
   double nominal_volts = 0.0;  // V
 };
 
+/// A load that the model does not list, across a hot and the neutral of its circuit at its far end.
+struct UnlistedLoad {
+  std::string circuit;
+  int element = 0;             // index into Network::elements
+  int connection = 0;          // index into Lowered::connections
+  double nominal_volts = 0.0;  // V
+};
+
 /// A pole of a live supply.
 struct LivePole {
   int node = 0;
@@ -87,6 +103,7 @@ struct Lowered {
   engine::Network network;
   std::vector<std::string> node_names;                    // size node_count; [0] is "earth"
   std::vector<std::string> line_runs;                     // size lines
+  std::vector<Stretch> line_stretches;                    // size lines
   std::vector<std::vector<std::string>> line_conductors;  // [line][conductor]
   std::vector<std::string> element_names;                 // size elements: "load LP2-7"
   std::vector<std::string> source_names;                  // size sources: "T1 A"
@@ -94,6 +111,7 @@ struct Lowered {
   std::vector<ConductorPath> conductors;                  // every wire of the model, then raceways and armour
   std::vector<Connection> connections;                    // within conductors, through contacts, bonds, loads
   std::vector<LoweredLoad> loads;                         // those that are not off
+  std::vector<UnlistedLoad> unlisted_loads;               // assumed ones, where they were asked for
   std::vector<LivePole> poles;
   std::set<std::string> floating_supplies;  // names of supplies without a grounded pole
   std::vector<std::string> states;          // every breaker and switch state assumed, in words
@@ -101,8 +119,24 @@ struct Lowered {
   std::vector<std::string> warnings;
 };
 
+/// Matrices of sections solved before, by content, single layouts and means: a lowering can go on where
+/// another left off.
+using SectionCache = std::map<std::string, std::shared_ptr<const engine::LineMatrices>>;
+
+struct LowerOptions {
+  unsigned seed = 1;                       // draws the layouts
+  std::shared_ptr<SectionCache> sections;  // of earlier lowerings with the same seed; may be null
+  bool unlisted_loads = false;             // puts k_unlisted_power where a circuit lists no loads
+};
+
+/// W at nominal voltage, of a load that the model does not list, where it is asked for.
+inline constexpr double k_unlisted_power = 100.0;
+
 /// Lowers a valid building in one stage ("" for the first, or as drawn where there are none). `seed`
 /// draws the layouts. Throws std::invalid_argument for a stage that is not there.
 Lowered lower(const Building& building, const std::string& stage, unsigned seed);
+
+/// Lowers a building whose stage is applied already (netlists/stage.h).
+Lowered lower_staged(const Building& staged, const LowerOptions& options);
 
 }  // namespace netlists

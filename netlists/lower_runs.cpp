@@ -113,6 +113,7 @@ void Lowering::add_piece(const Piece& piece) {
   line_rows_.push_back(rows);
   out_.network.lines.push_back(std::move(line));
   out_.line_runs.push_back(run_names);
+  out_.line_stretches.push_back(piece.stretch);
   out_.line_conductors.push_back(std::move(names));
 }
 

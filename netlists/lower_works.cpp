@@ -1,6 +1,8 @@
 // Switches, bonds, leaks and loads.
 #include <fmt/format.h>
 
+#include <algorithm>
+
 #include "netlists/lowering.h"
 
 namespace netlists {
@@ -49,6 +51,7 @@ void Lowering::add_loads(const Circuit& circuit) {
   if (!circuit.loads) {
     const bool fed = circuit.panel.has_value();
     if (fed) unlisted_.push_back(circuit.name.text);
+    if (fed && assume_loads_) add_unlisted_load(circuit);
     return;
   }
   for (const Load& load : *circuit.loads) {
@@ -67,6 +70,38 @@ void Lowering::add_loads(const Circuit& circuit) {
     out_.loads.push_back(
         {name, circuit.name.text, load.kind, load.at.text, a, b, model.admittance, model.nominal_volts});
     if (!model.filter) out_.connections.push_back({a, b, Join::load, 1.0 / model.admittance, name});
+  }
+}
+
+// Across each hot and the neutral, or each pair of hots where there is none, at the end of the last run.
+void Lowering::add_unlisted_load(const Circuit& circuit) {
+  std::vector<std::string> hots;
+  std::string neutral;
+  for (const Wire& wire : circuit.wires) {
+    if (names_neutral(wire.name.text)) neutral = wire.name.text;
+    if (!names_neutral(wire.name.text) && !names_ground(wire.name.text) &&
+        hots.size() < std::max<std::size_t>(1, circuit.poles.size()))
+      hots.push_back(wire.name.text);
+  }
+  if (circuit.runs.empty() || hots.empty()) return;
+  const std::string place = far_place(circuit);
+  const auto reached = [&](const std::string& name) {
+    const int wire = wiring_.find(circuit.name.text, name);
+    return wire >= 0 && reaches(wiring_.wires[wire], place);
+  };
+  for (std::size_t i = 0; i < hots.size(); ++i) {
+    const std::string other = !neutral.empty() ? neutral : i + 1 < hots.size() ? hots[i + 1] : "";
+    if (other.empty() || !reached(hots[i]) || !reached(other)) continue;
+    const double volts = nominal_volts(building_, circuit, other);
+    if (volts <= 0.0) continue;
+    const double admittance = k_unlisted_power / (volts * volts);
+    const std::string name = "load " + circuit.name.text + " (not listed)";
+    const int a = point_of(circuit.name.text, hots[i], place);
+    const int b = point_of(circuit.name.text, other, place);
+    add_element(name, a, b, admittance);
+    out_.connections.push_back({a, b, Join::load, 1.0 / admittance, name});
+    out_.unlisted_loads.push_back({circuit.name.text, static_cast<int>(out_.network.elements.size()) - 1,
+                                   static_cast<int>(out_.connections.size()) - 1, volts});
   }
 }
 

@@ -28,7 +28,7 @@ struct Piece {
 /// Grows the network of one building and says it once. Its parts are in lower_*.cpp.
 class Lowering {
  public:
-  Lowering(const Building& building, unsigned seed);
+  Lowering(const Building& building, const LowerOptions& options);
 
   Lowered lower();
 
@@ -72,6 +72,7 @@ class Lowering {
   void add_bond(const Bond& bond);
   void add_leak(const Leak& leak);
   void add_loads(const Circuit& circuit);
+  void add_unlisted_load(const Circuit& circuit);
   void mark_drive(const Circuit& circuit, const Load& load);
   void add_element(const std::string& name, int a, int b, Complex admittance);
 
@@ -129,6 +130,7 @@ class Lowering {
   Wiring wiring_;
   SectionLibrary sections_;
   unsigned seed_;
+  bool assume_loads_;
   Joints joints_;
   Lowered out_;
   std::set<std::string> landed_ground_;  // points of ground wires whose landing is settled

@@ -54,9 +54,10 @@ double Places::live_like(const std::string& place) const {
 
 Appearance Places::appearance(double volts, const std::string& place) const {
   if (volts >= live_like(place)) return Appearance::live_like;
-  return volts < building_.limits.dead_like.value_or(k_dead_like) ? Appearance::dead_like
-                                                                  : Appearance::unclear;
+  return volts < dead_like() ? Appearance::dead_like : Appearance::unclear;
 }
+
+double Places::dead_like() const { return building_.limits.dead_like.value_or(k_dead_like); }
 
 std::set<std::string> Places::supplies_at(const std::string& place) const {
   std::set<std::string> names;

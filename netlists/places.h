@@ -40,6 +40,9 @@ class Places {
   /// lowest line voltage there.
   double live_like(const std::string& place) const;
 
+  /// Below it a reading looks dead, V.
+  double dead_like() const;
+
   /// What a reading of so many volts looks like there (netlists/README.md, "Misleading").
   Appearance appearance(double volts, const std::string& place) const;
 

@@ -41,10 +41,14 @@ void set_misleads(ConductorFindings& found) {
 void rank(std::vector<ConductorFindings>& all) {
   std::stable_sort(all.begin(), all.end(), [](const ConductorFindings& a, const ConductorFindings& b) {
     if (group(a) != group(b)) return group(a) < group(b);
-    return a.misleads != Misleads::no && a.expected_reading > b.expected_reading;
+    if (a.misleads == Misleads::no) return false;
+    if (a.probability.value_or(0.0) != b.probability.value_or(0.0))
+      return a.probability.value_or(0.0) > b.probability.value_or(0.0);
+    return a.expected_reading > b.expected_reading;
   });
   int next = 1;
   for (ConductorFindings& found : all) {
+    found.rank.reset();
     if (found.misleads != Misleads::no) found.rank = next++;
   }
 }

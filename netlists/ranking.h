@@ -15,7 +15,8 @@ bool fed(Condition condition);
 /// reading it is ranked by is the highest judged one.
 void set_misleads(ConductorFindings& found);
 
-/// Sorts: false_dead, then false_live, each by expected reading, then the rest in the order given.
+/// Sorts: false_dead, then false_live, each by probability where draws gave one, ties by expected reading;
+/// then the rest in the order given.
 /// Numbers those that mislead from 1.
 void rank(std::vector<ConductorFindings>& all);
 

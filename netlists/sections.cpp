@@ -14,8 +14,8 @@
 #include "engine/capacitance.h"
 #include "engine/impedance.h"
 #include "engine/layout.h"
-#include "engine/outline.h"
 #include "engine/strip.h"
+#include "netlists/section_assembly.h"
 
 namespace netlists {
 namespace {
@@ -26,34 +26,8 @@ constexpr double k_default_clearance = 50e-3;  // m
 constexpr double k_bare_gap = 50e-6;        // m
 constexpr double k_field_tolerance = 1e-3;  // layouts scatter by tens of percent; a tenth of one is ample
 constexpr double k_row_gap = 1e-6;          // m, between neighbours that touch
-constexpr double k_joint_slack = 1e-6;      // m, keeps a core that touches its jacket inside it
-constexpr int k_most_layouts = 16;
-
-/// A thing that lies in a raceway as one: a loose wire or a factory cable.
-struct Item {
-  std::vector<int> wires;  // cores in order, or the one loose wire
-  int armour = -1;         // wire index of the cable's armour
-  const CableType* cable = nullptr;
-  std::string layout_name;   // what a `layout:` entry calls it
-  std::string signature;     // equal for things of equal build
-  double radius = 0.0;       // m, of the circle it takes up
-  double half_height = 0.0;  // m, lying flat
-};
-
-engine::Dielectric dielectric(const Catalogue& catalogue, const std::string& material) {
-  const auto found = catalogue.materials.find(material);
-  if (found == catalogue.materials.end())
-    throw std::invalid_argument("material '" + material + "' is not known");
-  return {found->second.permittivity, found->second.loss_tangent};
-}
-
-engine::Metal metal(const Catalogue& catalogue, const std::string& material) {
-  const auto found = catalogue.materials.find(material);
-  if (found == catalogue.materials.end())
-    throw std::invalid_argument("material '" + material + "' is not known");
-  return {found->second.conductivity, found->second.relative_permeability,
-          found->second.temperature_coefficient};
-}
+constexpr double k_slope_tolerance = 1e-2;  // a few percent of a slope, which is but a spread's
+constexpr double k_slope_step = 1e-6;       // tan delta that tells one insulation from the others
 
 std::string wire_signature(const WireType& type) {
   std::string text =
@@ -103,123 +77,6 @@ std::vector<Eigen::Vector2d> stacked_rows(const std::vector<double>& radii,
   return centres;
 }
 
-/// The jacket of a cable, a strip with round ends if it is flat. What the cores' places need of it, where
-/// a catalogue's figures contradict each other, goes before its thickness.
-engine::Body jacket_of(const CableType& cable, const Catalogue& catalogue, const Eigen::Vector2d& centre,
-                       double turn) {
-  const double thin = std::min(cable.width, cable.height) / 2;
-  engine::Body body;
-  body.centre = centre;
-  body.core = {{cable.width / 2 - thin, cable.height / 2 - thin}, turn};
-  double reach = 0.0;
-  for (const Core& core : cable.cores)
-    reach = std::max(
-        reach, core.wire.outer_diameter() / 2 +
-                   engine::signed_distance({{0.0, 0.0}, {body.core.half_size, 0.0}, 0.0}, {core.x, core.y}));
-  body.inner_radius = std::max(thin - cable.jacket_thickness, reach + k_joint_slack);
-  body.outer_radius = std::max(thin, body.inner_radius + k_joint_slack);
-  body.filler = dielectric(catalogue, cable.filler.empty() ? cable.jacket : cable.filler);
-  body.wall = dielectric(catalogue, cable.jacket);
-  return body;
-}
-
-/// Grows a CrossSection item by item. Shells come after all conductors, so they wait till the end.
-class Assembly {
- public:
-  Assembly(const Building& building, const Wiring& wiring) : building_(building), wiring_(wiring) {
-    section_.surroundings = engine::Surroundings::plane;
-    section_.tolerance = k_field_tolerance;
-  }
-
-  void add_item(const Item& item, const Eigen::Vector2d& centre, double turn, int run) {
-    if (!item.cable) {
-      add_wire(item.wires[0], *wiring_.wires[item.wires[0]].type, centre, run);
-      return;
-    }
-    const CableType& cable = *item.cable;
-    for (std::size_t i = 0; i < item.wires.size(); ++i) {
-      const Core& core = cable.cores[i];
-      const Eigen::Vector2d offset{core.x * std::cos(turn) - core.y * std::sin(turn),
-                                   core.x * std::sin(turn) + core.y * std::cos(turn)};
-      add_wire(item.wires[i], core.wire, centre + offset, run);
-    }
-    if (cable.armour) {
-      add_armour(item, cable, centre, run);
-    } else {
-      section_.bodies.push_back(jacket_of(cable, building_.catalogue, centre, turn));
-    }
-  }
-
-  void add_plastic_tube(const RacewayType& raceway, const Eigen::Vector2d& centre) {
-    engine::Body tube;
-    tube.centre = centre;
-    tube.inner_radius = raceway.inner_diameter / 2;
-    tube.outer_radius = raceway.outer_diameter / 2;
-    tube.wall = dielectric(building_.catalogue, raceway.material);
-    section_.bodies.push_back(tube);
-  }
-
-  /// A round tube, or the rectangle of a wireway.
-  void add_metal_tube(const RacewayType& raceway, const Eigen::Vector2d& centre, int run) {
-    const bool wireway = raceway.kind == RacewayKind::wireway;
-    engine::Shell shell;
-    shell.centre = centre;
-    shell.inner_radius = wireway ? 0.0 : raceway.inner_diameter / 2;
-    shell.outer_radius = wireway ? raceway.wall : raceway.outer_diameter / 2;
-    if (wireway) shell.core.half_size = {raceway.width / 2, raceway.height / 2};
-    shell.metal = metal(building_.catalogue, raceway.material);
-    shells_.push_back(shell);
-    shell_rows_.push_back({-1, run});
-  }
-
-  engine::CrossSection finish(std::vector<StretchRow>& rows) {
-    section_.shells = shells_;
-    rows = rows_;
-    rows.insert(rows.end(), shell_rows_.begin(), shell_rows_.end());
-    return section_;
-  }
-
- private:
-  void add_wire(int wire, const WireType& type, const Eigen::Vector2d& centre, int run) {
-    engine::RoundConductor conductor;
-    conductor.centre = centre;
-    conductor.radius = type.conductor_diameter / 2;
-    conductor.strands = type.strands;
-    conductor.dc_resistance = type.resistance;
-    conductor.metal = metal(building_.catalogue, type.metal);
-    double radius = conductor.radius;
-    for (const auto& layer : type.layers) {
-      radius += layer.thickness;
-      conductor.layers.push_back({radius, dielectric(building_.catalogue, layer.material)});
-    }
-    section_.conductors.push_back(conductor);
-    rows_.push_back({wire, run});
-  }
-
-  void add_armour(const Item& item, const CableType& cable, const Eigen::Vector2d& centre, int run) {
-    engine::Shell shell;
-    shell.centre = centre;
-    shell.inner_radius = cable.armour->inner_diameter / 2;
-    shell.outer_radius = cable.armour->outer_diameter / 2;
-    shell.metal = metal(building_.catalogue, cable.armour->material);
-    shell.dc_resistance = cable.armour->resistance;
-    if (!cable.filler.empty()) shell.filler = dielectric(building_.catalogue, cable.filler);
-    if (!cable.jacket.empty()) {
-      shell.layers.push_back(
-          {shell.outer_radius + cable.jacket_thickness, dielectric(building_.catalogue, cable.jacket)});
-    }
-    shells_.push_back(shell);
-    shell_rows_.push_back({item.armour, run});
-  }
-
-  const Building& building_;
-  const Wiring& wiring_;
-  engine::CrossSection section_;
-  std::vector<engine::Shell> shells_;
-  std::vector<StretchRow> rows_;
-  std::vector<StretchRow> shell_rows_;
-};
-
 }  // namespace
 
 std::string raceway_id(const Run& run) { return run.name.text + ".raceway"; }
@@ -232,11 +89,13 @@ struct SectionLibrary::Impl {
   unsigned seed;
   std::vector<std::vector<Item>> items;      // by run
   std::vector<const RacewayType*> raceways;  // by run; nullptr: none
-  std::map<std::string, std::shared_ptr<const engine::LineMatrices>> known;
+  std::shared_ptr<SectionCache> known;
   int solved = 0;
   int reused = 0;
 
-  Impl(const Building& b, const Wiring& w, unsigned s) : building(b), wiring(w), seed(s) {
+  Impl(const Building& b, const Wiring& w, unsigned s, std::shared_ptr<SectionCache> cache)
+      : building(b), wiring(w), seed(s), known(std::move(cache)) {
+    if (!known) known = std::make_shared<SectionCache>();
     items.resize(b.runs.size());
     for (const Run& run : b.runs) {
       const auto found = b.catalogue.raceways.find(run.raceway.text);
@@ -320,19 +179,19 @@ struct SectionLibrary::Impl {
     return centres;
   }
 
-  void add_run(Assembly& assembly, int run, double x, std::mt19937_64& random) const {
+  void add_run(Assembly& assembly, int run, double x, std::mt19937_64& random, double clearance) const {
     const RacewayType* raceway = raceways[run];
     const bool tube = raceway && raceway->kind != RacewayKind::tray;
     const bool given = !building.runs[run].layout.empty();
     Eigen::Vector2d origin{x, 0.0};
     if (tube) {
-      origin.y() = clearance_of(building.runs[run]) + outer_half_height(*raceway);
+      origin.y() = clearance + outer_half_height(*raceway);
       if (raceway->metal())
         assembly.add_metal_tube(*raceway, origin, run);
       else
         assembly.add_plastic_tube(*raceway, origin);
     } else if (!given || raceway) {
-      origin.y() = raceway ? k_row_gap : clearance_of(building.runs[run]);
+      origin.y() = raceway ? k_row_gap : clearance;
     }
     const std::vector<Eigen::Vector2d> centres = given ? given_layout(run) : drawn_layout(run, random);
     boost::random::uniform_real_distribution<double> turn(0.0, 2 * std::numbers::pi);
@@ -363,19 +222,21 @@ struct SectionLibrary::Impl {
     return engine::resting_layout(radii, raceway->inner_diameter / 2, random);
   }
 
-  engine::CrossSection draw(const Stretch& stretch, int number, std::vector<StretchRow>& rows) const {
+  // `clearance`, if any, stands for that of every run.
+  DrawnSection draw(const Stretch& stretch, int number, std::optional<double> clearance) const {
     std::mt19937_64 random(
         fingerprint(signature(stretch), (static_cast<std::uint64_t>(seed) << 16) + number));
-    Assembly assembly(building, wiring);
+    Assembly assembly(building, wiring, k_field_tolerance);
     double x = 0.0;
     for (std::size_t i = 0; i < stretch.runs.size(); ++i) {
       if (i > 0) {
         x += half_width(stretch.runs[i - 1]) + std::max(stretch.spacing[i - 1], 2 * k_row_gap) +
              half_width(stretch.runs[i]);
       }
-      add_run(assembly, stretch.runs[i], x, random);
+      add_run(assembly, stretch.runs[i], x, random,
+              clearance.value_or(clearance_of(building.runs[stretch.runs[i]])));
     }
-    return assembly.finish(rows);
+    return assembly.finish();
   }
 
   std::string signature(const Stretch& stretch) const {
@@ -397,62 +258,111 @@ struct SectionLibrary::Impl {
   }
 
   // The tray is the plane of its section; here it becomes a conductor over the earth, the last row.
-  void put_tray_on_earth(const Stretch& stretch, const engine::CrossSection& section,
-                         const engine::ImpedanceConditions& conditions,
+  void put_tray_on_earth(const Stretch& stretch, const engine::CrossSection& section, double clearance,
                          engine::LineMatrices& matrices) const {
     const RacewayType& tray = *raceways[stretch.runs[0]];
-    const engine::Strip strip{tray.width, tray.wall, clearance_of(building.runs[stretch.runs[0]]),
-                              2 * tray.height * tray.wall, metal(building.catalogue, tray.material)};
-    engine::add_strip_row(section, strip, conditions, matrices.impedance, matrices.capacitance,
+    const engine::Strip strip{tray.width, tray.wall, clearance, 2 * tray.height * tray.wall,
+                              metal(building.catalogue, tray.material)};
+    engine::add_strip_row(section, strip, conditions(), matrices.impedance, matrices.capacitance,
                           matrices.conductance);
   }
 
-  engine::LineMatrices solve(const Stretch& stretch, int draws) {
-    engine::LineMatrices sum;
+  engine::ImpedanceConditions conditions() const {
+    return {building.frequency, building.temperature, building.earth_resistivity};
+  }
+
+  engine::LineMatrices one_layout(const Stretch& stretch, int number, std::optional<double> clearance) const {
+    const engine::CrossSection section = draw(stretch, number, clearance).section;
+    const engine::FieldMatrices field = engine::field_matrices(section, engine::Inductance::without);
     const double omega = 2 * std::numbers::pi * building.frequency;
-    const engine::ImpedanceConditions conditions{building.frequency, building.temperature,
-                                                 building.earth_resistivity};
-    for (int number = 0; number < draws; ++number) {
-      std::vector<StretchRow> rows;
-      const engine::CrossSection section = draw(stretch, number, rows);
-      const engine::FieldMatrices field = engine::field_matrices(section, engine::Inductance::without);
-      ++solved;
-      engine::LineMatrices one{engine::series_impedance(section, conditions), field.capacitance,
-                               omega * field.loss_capacitance};
-      if (on_tray(stretch)) put_tray_on_earth(stretch, section, conditions, one);
-      if (number == 0) {
-        sum = one;
-        continue;
-      }
+    engine::LineMatrices one{engine::series_impedance(section, conditions()), field.capacitance,
+                             omega * field.loss_capacitance};
+    if (on_tray(stretch))
+      put_tray_on_earth(stretch, section, clearance.value_or(clearance_of(building.runs[stretch.runs[0]])),
+                        one);
+    return one;
+  }
+
+  std::string layout_key(const Stretch& stretch, int number) const {
+    return fmt::format("{} # {}", signature(stretch), number);
+  }
+
+  const engine::LineMatrices& kept_layout(const Stretch& stretch, int number) {
+    auto& kept = (*known)[layout_key(stretch, number)];
+    if (!kept) kept = std::make_shared<engine::LineMatrices>(one_layout(stretch, number, std::nullopt));
+    return *kept;
+  }
+
+  engine::LineMatrices solve(const Stretch& stretch, int draws) {
+    engine::LineMatrices sum = kept_layout(stretch, 0);
+    for (int number = 1; number < draws; ++number) {
+      const engine::LineMatrices& one = kept_layout(stretch, number);
       sum.impedance += one.impedance;
       sum.capacitance += one.capacitance;
       sum.conductance += one.conductance;
     }
+    solved += draws;
     sum.impedance /= draws;
     sum.capacitance /= draws;
     sum.conductance /= draws;
     return sum;
   }
 
+  // C is an analytic function of every complex permittivity, so a loss tangent h of one insulation alone,
+  // all others without loss, leaves h dC/d ln(permittivity) as loss, exact but for terms of h squared.
+  Eigen::MatrixXd slope(const Stretch& stretch, DrawnSection drawn, int insulation) const {
+    const auto set = [&](engine::Dielectric& dielectric, int tag) {
+      dielectric.loss_tangent = tag == insulation ? k_slope_step : 0.0;
+    };
+    engine::CrossSection& section = drawn.section;
+    section.tolerance = k_slope_tolerance;
+    for (std::size_t i = 0; i < section.conductors.size(); ++i)
+      for (std::size_t k = 0; k < section.conductors[i].layers.size(); ++k)
+        set(section.conductors[i].layers[k].dielectric, drawn.tags.conductor_layers[i][k]);
+    for (std::size_t i = 0; i < section.bodies.size(); ++i) {
+      set(section.bodies[i].wall, drawn.tags.bodies[i].first);
+      set(section.bodies[i].filler, drawn.tags.bodies[i].second);
+    }
+    for (std::size_t i = 0; i < section.shells.size(); ++i) {
+      set(section.shells[i].filler, drawn.tags.shells[i].first);
+      for (std::size_t k = 0; k < section.shells[i].layers.size(); ++k)
+        set(section.shells[i].layers[k].dielectric, drawn.tags.shells[i].second[k]);
+    }
+    const engine::FieldMatrices field = engine::field_matrices(section, engine::Inductance::without);
+    const Eigen::MatrixXd inner = field.loss_capacitance / k_slope_step;
+    if (!on_tray(stretch)) return inner;
+    // What ends on the plane ends on the tray; the tray's own capacitance to earth lies in air.
+    const Eigen::Index n = inner.rows();
+    Eigen::MatrixXd outer(n + 1, n + 1);
+    const Eigen::VectorXd sums = inner.rowwise().sum();
+    outer << inner, -sums, -sums.transpose(), sums.sum();
+    return outer;
+  }
+
   double wander_length() const {
     return std::sqrt(building.uncertainty.wander_length.first * building.uncertainty.wander_length.second);
   }
 
-  // Powers of two, so that runs of similar length and equal content share their matrices.
-  int layouts(const Stretch& stretch, double length) const {
+  bool varies(const Stretch& stretch) const {
     const bool given = std::all_of(stretch.runs.begin(), stretch.runs.end(),
                                    [&](int run) { return !building.runs[run].layout.empty(); });
     const bool single = std::all_of(stretch.runs.begin(), stretch.runs.end(),
                                     [&](int run) { return items[run].size() <= 1 && !raceways[run]; });
-    if (given || single) return 1;
+    return !given && !single;
+  }
+
+  // Powers of two, so that runs of similar length and equal content share their matrices.
+  int layouts(const Stretch& stretch, double length) const {
+    if (!varies(stretch)) return 1;
     int count = 1;
     while (count < k_most_layouts && count * std::sqrt(2.0) * wander_length() < length) count *= 2;
     return count;
   }
 };
 
-SectionLibrary::SectionLibrary(const Building& building, const Wiring& wiring, unsigned seed)
-    : impl_(std::make_unique<Impl>(building, wiring, seed)) {}
+SectionLibrary::SectionLibrary(const Building& building, const Wiring& wiring, unsigned seed,
+                               std::shared_ptr<SectionCache> cache)
+    : impl_(std::make_unique<Impl>(building, wiring, seed, std::move(cache))) {}
 SectionLibrary::~SectionLibrary() = default;
 
 std::vector<StretchRow> SectionLibrary::rows(const Stretch& stretch) const {
@@ -476,7 +386,7 @@ std::vector<StretchRow> SectionLibrary::rows(const Stretch& stretch) const {
 std::shared_ptr<const engine::LineMatrices> SectionLibrary::matrices(const Stretch& stretch, double length) {
   const int draws = impl_->layouts(stretch, length);
   const std::string key = fmt::format("{} x {}", impl_->signature(stretch), draws);
-  auto& known = impl_->known[key];
+  auto& known = (*impl_->known)[key];
   if (known) {
     ++impl_->reused;
   } else {
@@ -487,16 +397,37 @@ std::shared_ptr<const engine::LineMatrices> SectionLibrary::matrices(const Stret
 
 RunSection SectionLibrary::section(const Stretch& stretch, int draw) const {
   RunSection result;
-  std::vector<StretchRow> drawn;
-  result.section = impl_->draw(stretch, draw, drawn);
+  DrawnSection drawn = impl_->draw(stretch, draw, std::nullopt);
+  result.section = std::move(drawn.section);
   for (const int run : stretch.runs) {
     result.run += (result.run.empty() ? "" : "+") + impl_->building.runs[run].name.text;
   }
-  for (const StretchRow& row : drawn) {
+  for (const StretchRow& row : drawn.rows) {
     result.names.push_back(row.wire < 0 ? raceway_id(impl_->building.runs[row.run])
                                         : impl_->wiring.wires[row.wire].id);
   }
   return result;
+}
+
+std::string SectionLibrary::signature(const Stretch& stretch) const { return impl_->signature(stretch); }
+
+bool SectionLibrary::varies(const Stretch& stretch) const { return impl_->varies(stretch); }
+
+engine::LineMatrices SectionLibrary::one_layout(const Stretch& stretch, int number,
+                                                std::optional<double> clearance) const {
+  if (!clearance) {
+    const auto kept = impl_->known->find(impl_->layout_key(stretch, number));
+    if (kept != impl_->known->end()) return *kept->second;
+  }
+  return impl_->one_layout(stretch, number, clearance);
+}
+
+std::vector<InsulationSlope> SectionLibrary::slopes(const Stretch& stretch, int number) const {
+  const DrawnSection drawn = impl_->draw(stretch, number, std::nullopt);
+  std::vector<InsulationSlope> all;
+  for (std::size_t i = 0; i < drawn.insulations.size(); ++i)
+    all.push_back({drawn.insulations[i], impl_->slope(stretch, drawn, static_cast<int>(i))});
+  return all;
 }
 
 std::vector<std::string> SectionLibrary::assumptions() const {

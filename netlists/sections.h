@@ -1,8 +1,8 @@
 // What lies in each run, drawn at random as pulling leaves it, and its matrices per metre.
 #pragma once
 
-#include <map>
 #include <memory>
+#include <optional>
 #include <string>
 #include <vector>
 
@@ -13,23 +13,33 @@
 
 namespace netlists {
 
-/// One stretch of one or more runs that share a section: a run, or the joint part of runs that lie
-/// alongside each other.
-struct Stretch {
-  std::vector<int> runs;        // indices into Building::runs, in the order of their names
-  std::vector<double> spacing;  // m, between neighbours, surface to surface; size runs - 1
-};
-
 /// A section's rows with what they mean.
 struct StretchRow {
   int wire = -1;  // index into Wiring::wires; -1: the raceway itself
   int run = -1;   // index into Building::runs
 };
 
+/// An insulating body of one build: a wire's insulation, a cable's jacket, a plastic raceway.
+struct Insulation {
+  std::string owner;     // catalogue name of the wire, cable or raceway
+  std::string material;  // catalogue name
+};
+
+/// How the capacitance matrix of a layout follows one permittivity.
+struct InsulationSlope {
+  Insulation insulation;
+  Eigen::MatrixXd slope;  // F/m, dC / d ln(permittivity), n x n
+};
+
+/// How many layouts are averaged at most.
+inline constexpr int k_most_layouts = 16;
+
 /// Draws sections and keeps the matrices of those with equal content, so that each is solved once.
 class SectionLibrary {
  public:
-  SectionLibrary(const Building& building, const Wiring& wiring, unsigned seed);
+  /// Shares `cache`, if given, with libraries of the same seed and the same catalogue.
+  SectionLibrary(const Building& building, const Wiring& wiring, unsigned seed,
+                 std::shared_ptr<SectionCache> cache = nullptr);
   ~SectionLibrary();
 
   /// Rows of a stretch, in the order of its matrices.
@@ -40,6 +50,22 @@ class SectionLibrary {
 
   /// Layout number `draw` of a stretch, as a section to look at.
   RunSection section(const Stretch& stretch, int draw) const;
+
+  /// Equal for stretches of equal content, which share their layouts.
+  std::string signature(const Stretch& stretch) const;
+
+  /// False where there is but one layout: positions are given, or a single cable lies in the open.
+  bool varies(const Stretch& stretch) const;
+
+  /// Matrices of layout `number` alone; `clearance` (m), if given, stands for that of every run in it.
+  /// Those of numbers 0 to n - 1 are what matrices() averages, and are kept by it. Safe from several threads
+  /// at once, while none calls matrices().
+  engine::LineMatrices one_layout(const Stretch& stretch, int number,
+                                  std::optional<double> clearance = std::nullopt) const;
+
+  /// Derivatives of layout `number` by the permittivity of each insulation in it: exact ones of a solution to
+  /// 1e-2 (engine/capacitance.h says of what). May be called likewise.
+  std::vector<InsulationSlope> slopes(const Stretch& stretch, int number) const;
 
   /// What the sections rest on, in words, for the list of assumptions.
   std::vector<std::string> assumptions() const;

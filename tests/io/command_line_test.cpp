@@ -116,8 +116,8 @@ TEST_F(CommandLine, PredictWritesJsonToAFileBesideTheTable) {
   EXPECT_EQ(json["format"], "idlewire-findings/1");
   EXPECT_EQ(json["model"]["sha256"].get<std::string>().size(), 64u);
   EXPECT_EQ(json["stage"], "As found");
-  EXPECT_EQ(json["draws"], 0);
-  EXPECT_THAT(json["assumptions"].dump(), HasSubstr("nominal case"));
+  EXPECT_EQ(json["draws"], 200);
+  EXPECT_THAT(json["assumptions"].dump(), HasSubstr("JCGM 101"));
 }
 
 TEST_F(CommandLine, DashIsStandardOutputWithNothingElseOnIt) {
@@ -245,7 +245,7 @@ TEST_F(CommandLine, HelpAndVersionGoToStandardOutput) {
     EXPECT_EQ(run.status, 0);
     EXPECT_THAT(run.out, HasSubstr("Exit status"));
     EXPECT_THAT(run.err, IsEmpty());
-    for (const char* unbuilt : {"remedy", "weigh", "convert", "serve", "--draws"})
+    for (const char* unbuilt : {"remedy", "weigh", "convert", "serve"})
       EXPECT_THAT(run.out, Not(HasSubstr(unbuilt)));
   }
   EXPECT_THAT(run("--version").out, StartsWith("idlewire "));

@@ -3,6 +3,8 @@
 #include <gmock/gmock.h>
 #include <gtest/gtest.h>
 
+#include <cmath>
+
 namespace netlists {
 namespace {
 
@@ -42,6 +44,24 @@ TEST(SettleCoupling, NamesNoInstrumentWhereNoneSeparates) {
   EXPECT_FALSE(settle.instrument);
   EXPECT_THAT(settle.why, HasSubstr("10 kohm"));
   EXPECT_THAT(settle.why, HasSubstr("one at a time"));
+}
+
+// With draws it is the 95th percentile that must lie below the limit, and the limit is what all but one in
+// twenty of the weakest sources show: below 1.48 V by 1.645 of the spread in quadrature.
+TEST(SettleCoupling, JudgesByTheBandWhereThereIsOne) {
+  const RealSource source{120, 48, 0.5e-3, 0.03, 0.03, 0.012};
+  const Band narrow{0.1, 0.18, 0.3};
+  const Settle settle = settle_coupling({{"low_impedance", 3e3, 0.18, narrow}}, source);
+  ASSERT_TRUE(settle.instrument);
+  const double behind = 240.0 / 243.0;  // of the EMF, what the instrument does not get
+  const double spread = std::hypot((1 - behind) * 0.03, behind * 0.03, 0.012);
+  EXPECT_NEAR(settle.treat_as_live_above, 1.4815 * std::exp(-1.6448536 * spread), 1e-4);
+  EXPECT_LT(settle.treat_as_live_above, 1.4815);
+  ASSERT_TRUE(settle.source_taken_for_coupling);
+  EXPECT_NEAR(*settle.source_taken_for_coupling, 0.05, 1e-9);
+  EXPECT_THAT(settle.why, HasSubstr("0.1 V to 0.3 V"));
+  // The same median with a tail above the limit settles nothing.
+  EXPECT_FALSE(settle_coupling({{"low_impedance", 3e3, 0.18, Band{0.1, 0.18, 1.45}}}, source).instrument);
 }
 
 TEST(SettleIsolated, SaysThatNoReadingToGroundSettlesIt) {
