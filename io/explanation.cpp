@@ -85,7 +85,8 @@ std::string settles(const ConductorFindings& conductor, int width) {
 std::string thevenin(const PlaceFindings& place, int width) {
   TextTable table({{"what shows at " + printable(place.place) + ", to " + place.reference}, {""}});
   table.add({"open circuit", phasor_text(place.open_circuit, k_digits)});
-  if (place.open_circuit_band) table.add({"in nine of ten draws", band_text(place.open_circuit_band)});
+  if (place.open_circuit_band)
+    table.add({"in nine of ten draws", spread_text(place.open_circuit_band, volts_text)});
   table.add({"source impedance",
              ohms_text(std::abs(place.source_impedance), 3) + " at " + degrees_text(place.source_impedance)});
   table.add({"short-circuit current (computed)", amperes_text(place.short_circuit, 3)});

@@ -66,6 +66,10 @@ std::string header() {
                            "short_circuit_A",
                            "settled_by",
                            "treat_as_live_above_V",
+                           "reading_p05_V",
+                           "reading_p50_V",
+                           "reading_p95_V",
+                           "misleads_probability",
                            "caution"})
     row.text(name);
   return row.end();
@@ -89,6 +93,10 @@ std::string reading_row(const ConductorFindings& conductor, const PlaceFindings&
   row.number(std::abs(at.source_impedance)).number(degrees(at.source_impedance)).number(at.short_circuit);
   row.text(conductor.settle.instrument.value_or(""));
   row.number(settles ? std::optional(conductor.settle.treat_as_live_above) : std::nullopt);
+  using netlists::Band;
+  for (const double Band::*percentile : {&Band::p05, &Band::p50, &Band::p95})
+    row.number(reading.band ? std::optional((*reading.band).*percentile) : std::nullopt);
+  row.number(conductor.probability);
   return row.text(caution_of(conductor)).end();
 }
 

@@ -46,14 +46,6 @@ ordered_json reading_json(const Reading& reading, const std::string& where, Numb
   return out;
 }
 
-ordered_json envelope_json(const netlists::Envelope& envelope, const std::string& where, Numbers& number) {
-  return {{"least", number.real(envelope.least, where + ": envelope")},
-          {"most_found", number.real(envelope.most_found, where + ": envelope")},
-          {"most_bound", number.real(envelope.most_bound, where + ": envelope")},
-          {"exact", envelope.exact},
-          {"state", envelope.state}};
-}
-
 ordered_json place_json(const PlaceFindings& place, const std::string& id, Numbers& number) {
   const std::string where = id + " at " + place.place;
   ordered_json out;
@@ -72,7 +64,6 @@ ordered_json place_json(const PlaceFindings& place, const std::string& id, Numbe
     add_percentiles(band, place.short_circuit_band, where + ": short-circuit current", number);
     out["short_circuit_band_A"] = band;
   }
-  if (place.envelope) out["envelope_V"] = envelope_json(*place.envelope, where, number);
   out["readings"] = ordered_json::array();
   for (const Reading& reading : place.readings)
     out["readings"].push_back(reading_json(reading, where, number));

@@ -27,6 +27,9 @@ bool contradicts(const Reading& reading, Misleads how) {
 /// Whatever is not a number stands last.
 double order_by(double value) { return std::isfinite(value) ? value : -1.0; }
 
+/// " (43 to 71 V)", or nothing of nothing.
+std::string in_brackets(const std::string& text) { return text.empty() ? "" : " (" + text + ")"; }
+
 std::string list(const std::string& title, const std::vector<std::string>& lines, int width) {
   if (lines.empty()) return "";
   std::string out = "\n" + title + "\n";
@@ -134,11 +137,6 @@ std::string misleads_in_words(const ConductorFindings& conductor) {
 
 std::string small_volts(double volts) { return volts < 0.01 ? "<0.01 V" : volts_text(volts); }
 
-std::string band_text(const std::optional<netlists::Band>& band) {
-  if (!band) return "-";
-  return small_volts(band->p05) + " to " + small_volts(band->p95);
-}
-
 std::string chance_in_words(const ConductorFindings& conductor) {
   if (!conductor.probability) return "";
   return fmt::format("probability {:.2f}, give or take {:.2f}, if the drawing is right",
@@ -159,12 +157,40 @@ std::string reading_text(const Focus& at, const std::string& instrument) {
   return low == high ? high : low + " to " + high;
 }
 
+std::string spread_text(const std::optional<netlists::Band>& band, std::string (*text)(double, int)) {
+  if (!band || !std::isfinite(band->p05) || !std::isfinite(band->p95)) return "";
+  std::string low = text(band->p05, 2);
+  const std::string high = text(band->p95, 2);
+  if (low == high) return high;
+  const std::size_t unit = low.find(' ');
+  if (unit != std::string::npos && low.substr(unit) == high.substr(high.find(' '))) low.resize(unit);
+  return low + " to " + high;
+}
+
+std::string chance_text(const ConductorFindings& conductor) {
+  if (!conductor.probability) return "";
+  if (*conductor.probability < 0.01) return "under 1 %";
+  if (*conductor.probability > 0.99) return "over 99 %";
+  return fmt::format("{:.0f} %", 100 * *conductor.probability);
+}
+
+std::vector<std::string> influences_in_words(const ConductorFindings& conductor) {
+  std::vector<std::string> out;
+  for (const auto& one : conductor.influences)
+    out.push_back(
+        fmt::format("{}: {} of the variance, {}{} a standard deviation", printable(one.quantity),
+                    one.share < 0.01 ? std::string("under 1 %") : fmt::format("{:.0f} %", 100 * one.share),
+                    one.derivative < 0 ? "-" : "", volts_text(std::abs(one.derivative))));
+  return out;
+}
+
 std::string settle_in_words(const ConductorFindings& conductor) {
   const netlists::Settle& settle = conductor.settle;
   std::string text;
   if (settle.instrument)
-    text = fmt::format("{}: expect {}; treat as live above {}. ", *settle.instrument,
-                       volts_text(settle.expect, 3), limit_text(settle.treat_as_live_above));
+    text = fmt::format("{}: expect {}{}; treat as live above {}. ", *settle.instrument,
+                       volts_text(settle.expect, 3), in_brackets(spread_text(settle.band, volts_text)),
+                       limit_text(settle.treat_as_live_above));
   else
     text = "none of the model's instruments. ";
   if (!settle.why.empty()) {

@@ -51,8 +51,8 @@ Cell reading_cell(const Focus& at, const std::string& instrument) {
 
 void add_ranked(Workbook& book, const PageModel& model, const PageIndex& index) {
   Worksheet sheet = headed(book, model, "Ranked list");
-  std::vector<double> widths{6, 24, 10, 18, 14, 22, 12};
-  std::vector<std::string> heads{"rank", "conductor", "panel", "at", "to", "condition", "verdict"};
+  std::vector<double> widths{6, 24, 10, 18, 14, 22, 12, 9};
+  std::vector<std::string> heads{"rank", "conductor", "panel", "at", "to", "condition", "verdict", "chance"};
   for (const std::string& name : index.instruments()) {
     heads.push_back(name + " (V)");
     widths.push_back(std::max(10.0, 1.2 * static_cast<double>(name.size())));
@@ -74,6 +74,8 @@ void add_ranked(Workbook& book, const PageModel& model, const PageIndex& index) 
         {at.reference},
         {condition_text(conductor)},
         {conductor.misleads == netlists::Misleads::no ? "not flagged" : to_string(conductor.misleads)}};
+    row.push_back(conductor.probability ? Cell{*conductor.probability, CellLook::share}
+                                        : Cell{std::string()});
     for (const std::string& name : index.instruments()) row.push_back(reading_cell(at, name));
     row.push_back(at.place == nullptr ? Cell{std::string()}
                                       : Cell{std::abs(at.place->source_impedance), CellLook::ohms});
@@ -112,9 +114,13 @@ void add_sheets(Workbook& book, const PageModel& model) {
 
 void add_readings(Workbook& book, const PageModel& model) {
   Worksheet sheet = headed(book, model, "Readings");
-  sheet.set_widths({24, 18, 18, 20, 12, 12, 12, 10});
-  sheet.add_heads(
-      {"conductor", "at", "instrument", "to", "range (V)", "reading (V)", "appearance", "judged"});
+  sheet.set_widths({24, 18, 18, 20, 12, 12, 10, 10, 10, 12, 10});
+  sheet.add_heads({"conductor", "at", "instrument", "to", "range (V)", "reading (V)", "p05 (V)", "p50 (V)",
+                   "p95 (V)", "appearance", "judged"});
+  using netlists::Band;
+  const auto percentile = [](const Reading& reading, double Band::*which) {
+    return reading.band ? Cell{(*reading.band).*which, CellLook::volts} : Cell{std::string()};
+  };
   for (const ConductorFindings& conductor : model.findings.conductors)
     for (const PlaceFindings& place : conductor.places)
       for (const Reading& reading : place.readings)
@@ -124,6 +130,9 @@ void add_readings(Workbook& book, const PageModel& model) {
                    {reading.reference},
                    reading.range ? Cell{*reading.range} : Cell{std::string()},
                    {reading.volts, CellLook::volts},
+                   percentile(reading, &Band::p05),
+                   percentile(reading, &Band::p50),
+                   percentile(reading, &Band::p95),
                    {to_string(reading.appearance)},
                    {std::string(reading.judged ? "yes" : "no")}});
   sheet.end_table();

@@ -52,6 +52,58 @@ std::string scale(double full) {
   return out;
 }
 
+/// A reading's percentiles at an instrument's resistance.
+struct BandAt {
+  double resistance = 0.0;  // ohm
+  double low = 0.0;         // V
+  double high = 0.0;        // V
+};
+
+/// Where draws say how far the curve may lie: at each instrument, and at the right end the open circuit.
+/// Ascending; empty without draws.
+std::vector<BandAt> bands(const Findings& findings, const PlaceFindings& place) {
+  std::vector<BandAt> out;
+  for (const CurveMark& mark : curve_marks(findings, place))
+    for (const auto& reading : place.readings)
+      if (reading.band && reading.instrument == mark.instrument && reading.reference == place.reference)
+        out.push_back({mark.resistance, reading.band->p05, reading.band->p95});
+  if (out.empty()) return {};
+  std::sort(out.begin(), out.end(),
+            [](const BandAt& a, const BandAt& b) { return a.resistance < b.resistance; });
+  const auto& open = place.open_circuit_band;
+  if (open) out.push_back({k_curve_last, open->p05, open->p95});
+  return out;
+}
+
+/// Between the instruments the curve's own shape, scaled from one instrument's percentiles to the next's.
+std::string band_area(const Findings& findings, const PlaceFindings& place, double full) {
+  const std::vector<BandAt> known = bands(findings, place);
+  if (known.empty()) return "";
+  const auto of_curve = [&](double ohms) {
+    return std::max(1e-12, std::abs(place.open_circuit * ohms / (ohms + place.source_impedance)));
+  };
+  std::vector<CurvePoint> low, high;
+  for (const CurvePoint& point : curve_points(place.open_circuit, place.source_impedance, k_points)) {
+    auto after = std::find_if(known.begin(), known.end(),
+                              [&](const BandAt& at) { return at.resistance >= point.resistance; });
+    if (after == known.end()) --after;
+    const auto before = after == known.begin() || after->resistance < point.resistance ? after : after - 1;
+    const double steps = std::log(after->resistance / before->resistance);
+    const double share = steps > 0 ? std::log(point.resistance / before->resistance) / steps : 0.0;
+    const auto scaled = [&](double BandAt::*edge) {
+      const double a = (*before).*edge / of_curve(before->resistance);
+      const double b = (*after).*edge / of_curve(after->resistance);
+      return point.volts * (a + (b - a) * share);
+    };
+    low.push_back({point.resistance, scaled(&BandAt::low)});
+    high.push_back({point.resistance, scaled(&BandAt::high)});
+  }
+  std::reverse(high.begin(), high.end());
+  std::string back = line(high, full);
+  back.front() = 'L';
+  return fmt::format("<path class=band d=\"{}{}z\" />", line(low, full), back);
+}
+
 char letter(std::size_t k) { return static_cast<char>('a' + static_cast<int>(k % 26)); }
 
 }  // namespace
@@ -64,8 +116,10 @@ std::string curve_figure(const Findings& findings, const PlaceFindings& place,
   double most = std::abs(place.open_circuit);
   for (const CurveMark& mark : marks)
     if (std::isfinite(mark.volts)) most = std::max(most, mark.volts);
+  if (place.open_circuit_band) most = std::max(most, place.open_circuit_band->p95);
   const double full = rounded_up(most);
-  std::string body = "<use href=#axr />" + scale(full);
+  const std::string area = band_area(findings, place, full);
+  std::string body = "<use href=#axr />" + scale(full) + area;
   body += fmt::format("<path class=cv d=\"{}\" />", line(points, full));
   std::string legend;
   for (std::size_t k = 0; k < marks.size(); ++k) {
@@ -85,9 +139,10 @@ std::string curve_figure(const Findings& findings, const PlaceFindings& place,
                           html(*settle->instrument));
   return fmt::format(
       "<figure><svg viewBox=\"0 0 280 146\" role=img aria-label=\"Reading against the instrument's "
-      "resistance\">{}</svg><figcaption>Reading to {} against the instrument's resistance. {}.</figcaption>"
-      "</figure>\n",
-      body, html(place.reference), legend);
+      "resistance\">{}"
+      "</svg><figcaption>Reading to {} against the instrument's resistance. {}.{}</figcaption></figure>\n",
+      body, html(place.reference), legend,
+      area.empty() ? "" : " Grey: nine of ten draws, exact at the instruments.");
 }
 
 }  // namespace io

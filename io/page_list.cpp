@@ -64,6 +64,7 @@ std::string row(const PageModel& model, const PageIndex& index, std::size_t k) {
   out.cell(html(index.panel_of(conductor.id))).cell(place_text(at, index));
   out.cell(netlists::to_string(conductor.condition) + (conductor.isolated_supply ? ", isolated supply" : ""));
   out.cell(verdict_html(conductor.misleads));
+  if (model.findings.draws > 0) out.cell(chance_text(conductor), true);
   for (const std::string& name : index.instruments())
     out.cell(at.place == nullptr ? "-" : reading_text(at, name), true);
   out.cell(at.place == nullptr ? "-" : ohms_text(std::abs(at.place->source_impedance)), true);
@@ -71,7 +72,7 @@ std::string row(const PageModel& model, const PageIndex& index, std::size_t k) {
   return out.cell(at.place == nullptr ? "" : main_text(*at.place)).end();
 }
 
-std::string head(const PageIndex& index) {
+std::string head(const PageIndex& index, bool draws) {
   const auto column = [](const std::string& name, const char* key, bool figure) {
     return fmt::format("<th scope=col{}{}>{}", figure ? " class=n" : "",
                        *key == '\0' ? "" : fmt::format(" data-f={}", key), html(name));
@@ -79,6 +80,7 @@ std::string head(const PageIndex& index) {
   std::string out = column("#", "", true) + column("conductor", "", false) + column("panel", "panel", false) +
                     column("at", "", false) + column("condition", "condition", false) +
                     column("verdict", "verdict", false);
+  if (draws) out += column("chance", "", true);
   for (const std::string& name : index.instruments()) out += column(name, "", true);
   return out + column("source impedance", "", true) + column("short circuit (computed)", "", true) +
          column("mainly from", "", false);
@@ -196,7 +198,7 @@ std::string page_list(const PageModel& model, const PageIndex& index, std::size_
                       "<table id=ranked><caption>Conductors that are neither fed nor grounded by wire "
                       "as drawn, and whatever is flagged: false_dead first, then false_live, by rank"
                       "</caption><thead><tr>" +
-                          head(index) + "<tbody>" + rows + "</table>\n");
+                          head(index, model.findings.draws > 0) + "<tbody>" + rows + "</table>\n");
   if (left_out > 0)
     out += fmt::format(
         "<p>{} more conductors, lower in rank or not flagged, are left out of this table to keep the "

@@ -25,11 +25,19 @@ std::string fact(const char* name, const std::string& value) {
 
 /// What shows at the place the sheet speaks of.
 std::string facts(const PlaceFindings& place) {
+  const auto spread = [](const std::string& text) {
+    return text.empty() ? "" : "<br><span class=small>" + text + " in nine of ten draws</span>";
+  };
   return "<dl class=key>" +
-         fact("open circuit to", html(place.reference) + ": " + phasor_text(place.open_circuit)) +
+         fact("open circuit to", html(place.reference) + ": " + phasor_text(place.open_circuit) +
+                                     spread(spread_text(place.open_circuit_band, volts_text))) +
          fact("source impedance", ohms_text(std::abs(place.source_impedance), 3) + " at " +
-                                      degrees_text(place.source_impedance)) +
-         fact("short-circuit current (computed)", amperes_text(place.short_circuit, 3)) + "</dl>\n";
+                                      degrees_text(place.source_impedance) +
+                                      spread(spread_text(place.source_impedance_band, ohms_text))) +
+         fact("short-circuit current (computed)",
+              amperes_text(place.short_circuit, 3) +
+                  spread(spread_text(place.short_circuit_band, amperes_text))) +
+         "</dl>\n";
 }
 
 /// Contributions with what of each lies in phase with the sum: that column adds up to it.
@@ -59,6 +67,8 @@ std::string contributions(const PlaceFindings& place) {
 std::string reading_cell(const Reading& reading) {
   std::string out = volts_text(reading.volts, 3) + " " + netlists::to_string(reading.appearance);
   if (reading.range) out += ", range " + volts_text(*reading.range, 2);
+  const std::string spread = spread_text(reading.band, volts_text);
+  if (!spread.empty()) out += "<br>" + spread;
   return out + (reading.judged ? "" : " (shown only)");
 }
 
@@ -141,8 +151,10 @@ std::string head(const ConductorFindings& conductor, std::size_t k) {
   std::string out = fmt::format("<article class=sheet id=c{0} aria-labelledby=h{0}><h3 id=h{0}>{1}</h3>\n<p>",
                                 k, html(conductor.id));
   if (conductor.rank) out += fmt::format("Rank {}. ", *conductor.rank);
-  out += verdict_html(conductor.misleads) + ". " + html(condition_in_words(conductor)) +
-         ". As drawn; the drawing may be wrong.</p>\n";
+  out += verdict_html(conductor.misleads);
+  if (conductor.probability && conductor.misleads != netlists::Misleads::no)
+    out += ", chance " + chance_text(conductor) + " if the drawing is right";
+  out += ". " + html(condition_in_words(conductor)) + ". As drawn; the drawing may be wrong.</p>\n";
   if (conductor.isolated_supply)
     out +=
         "<p class=warn>It belongs to an isolated supply: no reading to ground settles it, and while one leg "
@@ -176,6 +188,8 @@ std::string page_sheet(const PageModel& model, const PageIndex& index, SectionGa
            current_figure(model.findings, *at.place) + sections(conductor, *at.place, index, gallery);
   }
   out += contributions(*at.place) + readings(conductor, index) + remarks(conductor, at.place);
+  if (!conductor.influences.empty())
+    out += "<h4>What moves its reading</h4>\n" + html_list(influences_in_words(conductor));
   if (drawn) out += effects(model, conductor);
   return out + fmt::format("<p class=small><a href=#r{}>Its row in the list</a></p></article>\n", k);
 }

@@ -4,6 +4,7 @@
 #include "io/page_html.h"
 #include "io/page_parts.h"
 #include "io/test_rows.h"
+#include "io/text_layout.h"
 
 namespace io {
 namespace {
@@ -25,6 +26,16 @@ std::string heading(const PageModel& model, const std::string& place, std::size_
       html(netlists::caution()), html(sheet_warning()));
 }
 
+/// "<br>43 to 71 V" under a reading, where there were draws.
+std::string spread(const TestRow& row, const std::string& instrument) {
+  for (const netlists::Reading& reading : row.place->readings) {
+    if (reading.instrument != instrument || reading.reference != row.reference) continue;
+    const std::string text = spread_text(reading.band, volts_text);
+    return text.empty() ? "" : "<br>" + text;
+  }
+  return "";
+}
+
 /// One sheet; `states` false where the states assumed would fill the page, and stand in the appendix alone.
 std::string sheet_html(const PageModel& model, const PageIndex& index, std::size_t number,
                        const TestSheet& test, bool states) {
@@ -37,7 +48,7 @@ std::string sheet_html(const PageModel& model, const PageIndex& index, std::size
   for (const TestRow& row : test.rows) {
     std::vector<std::string> cells{index.link_to(row.number), html(row.reference)};
     for (const std::string& name : index.instruments())
-      cells.push_back(reading_text({row.place, row.reference}, name));
+      cells.push_back(reading_text({row.place, row.reference}, name) + spread(row, name));
     cells.insert(cells.end(), {html(row.stop), "", "", ""});
     table.add(cells);
   }

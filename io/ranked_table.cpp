@@ -110,7 +110,8 @@ std::string drawn_text(const Focus& at) {
       if (reading.judged && reading.reference == at.reference && (!most || reading.volts > most->volts))
         most = &reading;
   if (most == nullptr || !most->band) return "";
-  return fmt::format(" In nine of ten draws {} on {}.", band_text(most->band), printable(most->instrument));
+  return fmt::format(" In nine of ten draws {} on {}.", spread_text(most->band, volts_text),
+                     printable(most->instrument));
 }
 
 /// The lines below a row: how it misleads, its condition, who puts the voltage there, what settles it.

@@ -43,6 +43,8 @@ const char* number_format(CellLook look) {
       return "[>=1]0.0;[>=0.0001]0.00000;0.0E+00";
     case CellLook::degrees:
       return "0.0";
+    case CellLook::share:
+      return "0 %";
     default:
       return nullptr;
   }
@@ -197,9 +199,9 @@ Workbook::Workbook(const std::string& title, const std::string& date) : state_(s
   properties.title = clean.data();
   properties.created = seconds_of(date);
   Worksheet::State::require(workbook_set_properties(state_->book, &properties));
-  for (const CellLook look :
-       {CellLook::plain, CellLook::title, CellLook::head, CellLook::wrapped, CellLook::caution,
-        CellLook::blank_to_fill, CellLook::volts, CellLook::ohms, CellLook::amperes, CellLook::degrees})
+  for (const CellLook look : {CellLook::plain, CellLook::title, CellLook::head, CellLook::wrapped,
+                              CellLook::caution, CellLook::blank_to_fill, CellLook::volts, CellLook::ohms,
+                              CellLook::amperes, CellLook::degrees, CellLook::share})
     state_->formats[look] = format_of(state_->book, look);
 }
 

@@ -10,7 +10,19 @@
 namespace io {
 
 /// How a cell looks. Figures show as many digits as make sense and keep them all.
-enum class CellLook { plain, title, head, wrapped, caution, blank_to_fill, volts, ohms, amperes, degrees };
+enum class CellLook {
+  plain,
+  title,
+  head,
+  wrapped,
+  caution,
+  blank_to_fill,
+  volts,
+  ohms,
+  amperes,
+  degrees,
+  share
+};
 
 /// A cell: text that stays text whatever it begins with, or a number; one that is not finite is left empty.
 struct Cell {

@@ -51,15 +51,6 @@ struct ContributionEntry {
   std::complex<double> volts;  // V RMS
 };
 
-/// The extremes of a voltage over the states of all circuits.
-struct Envelope {
-  double least = 0.0;              // V, over states with at least one aggressor on
-  double most_found = 0.0;         // V, of the state below
-  double most_bound = 0.0;         // V, proven: no state exceeds it
-  bool exact = false;              // the two agree within 1 %
-  std::vector<std::string> state;  // that gives most_found: "LP2-7 off and tied"
-};
-
 /// What a coupled voltage or current does to something or somebody.
 struct Effect {
   std::string what;   // "lamp_glows", "input_reads_on", "coil_stays_in", "device_trips", "person_feels", ...
@@ -89,7 +80,6 @@ struct PlaceFindings {
   std::optional<Band> open_circuit_band;      // V, magnitudes over the draws
   std::optional<Band> source_impedance_band;  // ohm, magnitudes
   std::optional<Band> short_circuit_band;     // A
-  std::optional<Envelope> envelope;
   std::vector<Reading> readings;
   std::vector<ContributionEntry> contributions;  // empty for stiffly fed conductors
 };

@@ -225,6 +225,12 @@ class Formats(unittest.TestCase):
                         close(given["reading (V)"], r["volts"])
                         self.assertEqual((row["conductor"], row["instrument"], float(row["reading_V"])),
                                          (c["id"], r["instrument"], r["volts"]))
+                        for percentile in ("p05", "p50", "p95"):
+                            value = r[percentile]
+                            self.assertEqual(row[f"reading_{percentile}_V"], "" if value is None else repr(value)
+                                             .removesuffix(".0"))
+                            if value is not None:
+                                close(given[f"{percentile} (V)"], value)
             self.assertEqual((list(sheets), list(readings), list(rows)), ([], [], []))
 
     def test_every_sheet_of_the_workbook_carries_the_caution(self):

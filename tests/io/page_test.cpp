@@ -196,6 +196,51 @@ TEST(CurvePoints, FollowTheDivider) {
   EXPECT_TRUE(io::curve_points(0.0, 1.0, 7).empty());
 }
 
+netlists::Band band(double p05, double p50, double p95) { return {p05, p50, p95, 0.0, 0.0, 0.0}; }
+
+/// The sample with what draws add to it.
+netlists::Findings drawn_findings() {
+  netlists::Findings findings = tests::sample_findings();
+  findings.draws = 200;
+  netlists::ConductorFindings& spare = findings.conductors[1];
+  spare.probability = 0.27;
+  spare.influences = {{"clearance of <C3>", -3.1, 0.62}, {"permittivity of PVC", 1.0, 0.004}};
+  for (auto& place : spare.places) {
+    place.open_circuit_band = band(43.0, 64.0, 71.0);
+    place.source_impedance_band = band(849e3, 1e6, 1.23e6);
+    for (auto& reading : place.readings)
+      if (!reading.indicator) reading.band = band(reading.volts / 2, reading.volts, reading.volts * 1.5);
+  }
+  return findings;
+}
+
+TEST(ReportPage, ShowsSpreadsChancesAndInfluencesWhereThereWereDraws) {
+  const std::string page = page_of(drawn_findings());
+  EXPECT_THAT(page, HasSubstr("43 to 71 V in nine of ten draws"));
+  EXPECT_THAT(page, HasSubstr("849 kohm to 1.2 Mohm in nine of ten draws"));
+  EXPECT_THAT(page, HasSubstr("chance 27 % if the drawing is right"));
+  EXPECT_THAT(page, HasSubstr("clearance of &lt;C3&gt;: 62 % of the variance, -3.1 V a standard deviation"));
+  EXPECT_THAT(page, HasSubstr("permittivity of PVC: under 1 % of the variance, 1.0 V a standard deviation"));
+  EXPECT_EQ(count(page, "<path class=band"), 1u);
+  const std::string without = page_of(tests::sample_findings());
+  for (const char* word : {"nine of ten", "chance", "variance", "<path class=band"})
+    EXPECT_THAT(without, Not(HasSubstr(word)));
+}
+
+// At an instrument the band is exactly its percentiles: 0.5 and 1.5 of a reading that lies on the curve.
+TEST(CurveFigure, BandPassesThroughThePercentiles) {
+  netlists::Findings findings = tests::sample_findings();
+  findings.instruments = {tests::voltmeter("dmm", 1e6)};
+  netlists::PlaceFindings place = tests::reached("JB-1", {80.0, 0.0}, {1e6, 0.0}, 8e-5);
+  place.readings = {tests::reading("dmm", "ground", 40.0, netlists::Appearance::unclear, true)};
+  place.readings[0].band = band(20.0, 40.0, 60.0);
+  const std::string figure = io::curve_figure(findings, place, nullptr);
+  // 1 Mohm is two thirds of the axis from 42 to 262; 20 and 60 V of 80 V are a quarter and three of 102 up
+  // from 112.
+  EXPECT_THAT(figure, HasSubstr("L189 86.5"));
+  EXPECT_THAT(figure, HasSubstr("L189 35.5"));
+}
+
 // What is drawn tip to tail has to end where the sum ends.
 TEST(PhasorFigure, ContributionsComeToTheSum) {
   netlists::PlaceFindings place = tests::reached("JB-1", {30.0, 40.0}, {1e5, 0.0}, 5e-4);
